@@ -19,6 +19,8 @@ CalcbookError
 from __future__ import annotations
 
 import difflib
+import traceback
+from pathlib import Path
 from typing import TYPE_CHECKING, Self
 
 if TYPE_CHECKING:
@@ -74,14 +76,24 @@ class CalcbookError(Exception):
         return f"    {line}\n    {' ' * start}{'^' * max(1, end - start)}"
 
     def __str__(self) -> str:
+        """Return place, what is wrong, the text with its caret, and what would be right."""
         first = f"{self.where}: {self.what}" if self.where else self.what
         return "\n".join(part for part in (first, self.marked(), self.hint) if part)
 
+    def _render_traceback_(self) -> list[str]:
+        """Return what a notebook shows: the line of the cell and the message, not our frames."""
+        ours = str(Path(__file__).parent)
+        frames = traceback.extract_tb(self.__traceback__)
+        theirs = [f for f in frames if not f.filename.startswith(ours)]
+        place = [f"line {theirs[-1].lineno}: {theirs[-1].line}"] if theirs else []
+        return [*place, f"{type(self).__name__}: {self}"]
+
     def __reduce__(self) -> tuple[object, ...]:
+        """Keep every part when an error crosses a process."""
         return _rebuild, (type(self), self.what, self.hint, self.where, self.text, self.span)
 
 
-def _rebuild(
+def _rebuild(  # noqa: PLR0917  called by pickle, which knows no keywords
     kind: type[CalcbookError],
     what: str,
     hint: str,
