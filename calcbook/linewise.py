@@ -1,0 +1,221 @@
+"""One case evaluated line by line, where something has no value: each item says what and why."""
+
+from __future__ import annotations
+
+import math
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from calcbook.compile import OutsideTableError
+from calcbook.formula import parse
+from calcbook.items import Check, Line
+from calcbook.program import decide
+from calcbook.tree import Logic, Not, gathered, names
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping, Sequence
+
+    from calcbook.bind import Bound
+    from calcbook.program import Program, Results, Step, Value
+    from calcbook.tree import Node
+
+
+class LineByLine:
+    """Evaluates the steps of a program in order; what cannot be computed stops nothing else.
+
+    Parameters
+    ----------
+    program, rows, keys
+        See ``Program.evaluate``.
+    found
+        The results so far: the values of the inputs, and their rows without one.
+    bad
+        Why an input or a schedule has no value.
+    """
+
+    def __init__(
+        self,
+        program: Program,
+        found: Results,
+        bad: dict[str, str],
+        rows: Mapping[str, int],
+        keys: Mapping[str, Sequence[str]],
+    ) -> None:
+        self.program, self.rows, self.keys = program, rows, keys
+        self.found = found
+        self.bad = bad
+
+    def results(self) -> Results:
+        """Evaluate everything and return the results."""
+        for step in self.program.steps():
+            self._visit(step)
+        return self.found
+
+    def _visit(self, step: Step) -> None:
+        bound = step.bound
+        applies, reason = self._applies(bound)
+        if bound.guards:
+            self.found.applies[bound.number] = applies
+        if isinstance(bound.item, Line):
+            self.found.values[bound.name] = None
+        if not applies:
+            return
+        reason = reason or self._missing(bound)
+        if not reason and isinstance(bound.item, Line):
+            reason = self._line(step)
+        elif not reason and isinstance(bound.item, Check):
+            reason = self._check(step)
+        if reason:
+            self.found.problems[bound.number] = reason
+            if isinstance(bound.item, Line):
+                self.bad[bound.name] = reason
+            elif isinstance(bound.item, Check):
+                self.found.checks[bound.number] = (None, None, None)
+
+    # --- conditions -------------------------------------------------------------------------
+
+    def _applies(self, bound: Bound) -> tuple[bool, str]:
+        """Return whether the conditions of an item hold, or why that cannot be said."""
+        for text in bound.guards:
+            node = parse(text)
+            held = self._holds(node)
+            if held is None:
+                cause = self._first_bad(names(node))
+                return (True, f"not available because of {cause}") if cause else (False, "")
+            if not held:
+                return False, ""
+        return True, ""
+
+    def _holds(self, node: Node) -> bool | None:
+        """Return whether a condition of single values holds, None where a value it needs lacks."""
+        if isinstance(node, Not):
+            inner = self._holds(node.operand)
+            return None if inner is None else not inner
+        if isinstance(node, Logic):
+            parts = [self._holds(part) for part in node.parts]
+            decisive = node.op == "or"
+            if decisive in parts:
+                return decisive
+            return None if None in parts else not decisive
+        if self._first_bad(names(node)):
+            return None
+        try:
+            return bool(self.program.run(self.program.code(node), self.found.values))
+        except (ArithmeticError, ValueError, TypeError):
+            return None
+
+    def _first_bad(self, used: Sequence[str]) -> str:
+        return next((name for name in used if name in self.bad), "")
+
+    # --- what is missing --------------------------------------------------------------------
+
+    def _missing(self, bound: Bound) -> str:
+        """Return why an item has no value before it is tried: a name or a row it needs has none."""
+        home = bound.schedule
+        if home is not None and home.name in self.bad:
+            return f"not available because of {home.name}"
+        for node in self._wanted(bound):
+            cause = self._first_bad(names(node))
+            if cause:
+                return f"not available because of {cause}"
+            for name in names(node) if home is None else gathered(node):
+                for reason in self.found.row_problems.get(name, ()):
+                    if reason and not self._follows(bound, node, name):
+                        return f"not available because of {name} ({reason})"
+        return ""
+
+    def _follows(self, bound: Bound, node: Node, name: str) -> bool:
+        """Whether a column takes another row by row, so that only some of its rows are missing."""
+        own = bound.schedule is not None and self.program.scope[name].rows == bound.schedule.rows
+        return own and name not in gathered(node)
+
+    def _wanted(self, bound: Bound) -> list[Node]:
+        """Return the formulas and conditions that decide a value; no case that does not hold."""
+        wanted: list[Node] = []
+        for test, node in bound.branches:
+            if test is None:
+                return [*wanted, node]
+            single = all(self.program.scope[n].rows is None for n in names(test))
+            held = self._holds(test) if single else None
+            if held is None:
+                wanted += [test, node]
+            elif held:
+                return [*wanted, node]
+        return wanted
+
+    # --- values -----------------------------------------------------------------------------
+
+    def _line(self, step: Step) -> str:
+        """Evaluate one line into the results; returns why it has no value, or ''."""
+        bound = step.bound
+        try:
+            value = self._value(step)
+        except (ArithmeticError, ValueError, TypeError) as error:
+            idle = [n for n in bound.needs if self.found.values.get(n, 0) is None]
+            return _failure(error, idle)
+        if value is None:
+            return "has no value: none of its cases holds"
+        if bound.schedule is None:
+            if not isinstance(value, float) or not math.isfinite(value):
+                return "has no finite value"
+            self.found.values[bound.name] = value
+            return ""
+        column = np.asarray(value, dtype=float) + np.zeros(self.rows[bound.schedule.rows])
+        self.found.values[bound.name] = column
+        self._mark_rows(bound, column)
+        return ""
+
+    def _value(self, step: Step) -> Value:
+        if step.whole is not None:
+            return self.program.run(step.whole, self.found.values)
+        for count, (test, code) in enumerate(step.branches):
+            if test is None or self.program.run(test, self.found.values):
+                if step.bound.branches[0][0] is not None:
+                    self.found.branch[step.bound.number] = count
+                value = self.program.run(code, self.found.values)
+                return float(value) if isinstance(value, (int, np.floating)) else value
+        self.found.branch[step.bound.number] = -1
+        return None
+
+    def _mark_rows(self, bound: Bound, column: np.ndarray) -> None:
+        """Take out the rows that have no value, each with its reason."""
+        reasons = [""] * len(column)
+        home = bound.schedule
+        keys = self.keys.get(home.rows, ()) if home is not None else ()
+        for name in dict.fromkeys(n for node in self._wanted(bound) for n in names(node)):
+            for row, reason in enumerate(self.found.row_problems.get(name, ())):
+                if reason and row < len(reasons) and not reasons[row]:
+                    reasons[row] = f"not available because of {name}"
+        for row in map(int, np.flatnonzero(~np.isfinite(column))):
+            reasons[row] = reasons[row] or "has no finite value"
+        if any(reasons):
+            column[[bool(r) for r in reasons]] = math.nan
+            named = [keys[n] if n < len(keys) else str(n + 1) for n in range(len(reasons))]
+            self.found.row_problems[bound.name] = [
+                f"row {key}: {r}" if r else "" for key, r in zip(named, reasons, strict=True)
+            ]
+
+    def _check(self, step: Step) -> str:
+        codes = step.sides or (step.branches[0][1],)
+        try:
+            sides = tuple(self.program.run(code, self.found.values) for code in codes)
+        except (ArithmeticError, ValueError, TypeError) as error:
+            idle = [n for n in step.bound.needs if self.found.values.get(n, 0) is None]
+            return _failure(error, idle).replace("has no value", "cannot be decided")
+        decide(step.bound, sides if step.sides else sides[0], self.found)
+        return self.found.problems.get(step.bound.number, "")
+
+
+def _failure(error: Exception, idle: Sequence[str]) -> str:
+    """Return why a formula gave nothing; ``idle`` are the names in it that do not apply."""
+    if isinstance(error, TypeError):
+        verb = "do" if len(idle) > 1 else "does"
+        return f"not available because {' and '.join(idle) or 'a value'} {verb} not apply"
+    if isinstance(error, OutsideTableError):
+        return f"has no value: {error}"
+    reasons: dict[type[Exception], str] = {
+        ZeroDivisionError: "a division by zero",
+        OverflowError: "the number is too large",
+    }
+    return f"has no value: {reasons.get(type(error), 'a function outside its range')}"
