@@ -1,0 +1,171 @@
+"""A section as HTML with MathML: rows of a page of calculation."""
+
+from __future__ import annotations
+
+import base64
+import re
+from html import escape
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from calcbook import figures, formula, typeset
+from calcbook.errors import CalcbookError
+from calcbook.live import blocks as parts
+from calcbook.live.output import amount_text, drawn
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    from calcbook.live.blocks import Block, Equation, Grid, Run, Words
+
+    Plain = Mapping[str, Any]
+
+GIVEN = ("entry", "text", "choice", "carried")
+_CLAUSE = re.compile(r"(?<![^\s(])[\w.]*\d-\d\w*")
+_WHOLE = r'<span class="cb-whole">\g<0></span>'
+
+
+def style() -> str:
+    """Return the style sheet of a view, in an element of its own."""
+    return f"<style>{Path(__file__).with_name('page.css').read_text(encoding='utf-8')}</style>"
+
+
+def words(content: Words) -> str:
+    """Return running text as HTML."""
+    return "".join(map(_run, content))
+
+
+def _run(run: Run) -> str:
+    match run:
+        case str():
+            return escape(run)
+        case parts.Strong(text):
+            return f"<strong>{escape(text)}</strong>"
+        case parts.Symbol(name):
+            return math(typeset.symbol(name, "mathml"))
+        case parts.Relation(text):
+            return math(typeset.expression(formula.parse(text), "mathml"))
+        case parts.Amount(text, unit, typed):
+            shown = escape(amount_text(text, unit))
+            return f'<span class="cb-typed">{shown}</span>' if typed else shown
+
+
+def math(code: str) -> str:
+    """Return the inside of a formula as a formula in running text."""
+    return f'<math><mstyle displaystyle="true">{code}</mstyle></math>'
+
+
+def row(block: Block, statement: Plain) -> str:
+    """Return a block as one row: number, words, body, margin."""
+    body = _body(block, statement)
+    if block.kind in ("remark", "figure", "schedule", "table", "error", "check"):
+        return _wide_row(block, body)
+    kind = "entry" if block.kind in GIVEN else block.kind
+    classes = f"cb-row cb-{kind}{' cb-within' if block.within else ''}"
+    return (
+        f'<div class="{classes}"><div class="cb-no">{escape(block.number)}</div>'
+        f'<div class="cb-words">{words(block.words)}</div>'
+        f'<div class="cb-body">{body}</div>{margin(block)}</div>'
+    )
+
+
+def _wide_row(block: Block, body: str) -> str:
+    kind = "cb-table-item" if block.kind == "table" else f"cb-{block.kind}"
+    return (
+        f'<div class="cb-row cb-wide {kind}"><div class="cb-no">{escape(block.number)}</div>'
+        f'<div class="cb-words">{words(block.words)}{body}</div>{margin(block)}</div>'
+    )
+
+
+def margin(block: Block) -> str:
+    """Return the margin of a row: clause and notes, small."""
+    return f'<div class="cb-margin">{notes(block.remarks)}</div>'
+
+
+def notes(remarks: tuple[Words, ...]) -> str:
+    """Return margin notes, one under the other."""
+    return "".join(f"<div>{_CLAUSE.sub(_WHOLE, words(note))}</div>" for note in remarks)
+
+
+def _body(block: Block, statement: Plain) -> str:
+    pieces = [equation(block.equation)] if block.equation else []
+    if block.grid:
+        pieces.append(grid(block.grid))
+    if block.kind == "check":
+        state = {True: "held", False: "failed", None: "open"}[block.item["satisfied"]]
+        pieces += [f'<div class="cb-{state}">{words(line)}</div>' for line in block.says]
+    else:
+        kind = "cb-value" if block.kind in GIVEN else "cb-says"
+        pieces += [f'<div class="{kind}">{words(line)}</div>' for line in block.says]
+    if block.kind == "figure":
+        pieces.append(figure(statement, block.item))
+    pieces += [trouble(text) for text in block.troubles]
+    return "".join(pieces)
+
+
+def trouble(text: str) -> str:
+    """Return what is wrong, marked by a word and a rule at its side."""
+    return f'<div class="cb-trouble" role="status"><strong>Problem:</strong> {lines(text)}</div>'
+
+
+def refused(reason: str) -> str:
+    """Return why something typed was not taken."""
+    return f'<div class="cb-refused" role="alert"><strong>Not taken:</strong> {lines(reason)}</div>'
+
+
+def lines(text: str) -> str:
+    """Return text of several lines as HTML."""
+    return "<br>".join(escape(line).replace("  ", "&nbsp; ") for line in text.splitlines())
+
+
+def equation(shown: Equation) -> str:
+    """Return a formula in parts that break before '=', the result in bold at its end."""
+    name, first, *rest = shown.parts("mathml")
+    pieces = [f"{name}<mo>=</mo>{first}", *(f"<mo>=</mo>{part}" for part in rest)]
+    spans = [f'<span class="cb-part">{math(f"<mrow>{piece}</mrow>")}</span>' for piece in pieces]
+    if shown.result:
+        last = shown.parts("plain")[-1]
+        lead = f'<span class="cb-part">{math(f"<mrow>{name}</mrow>")}</span> ' if not rest else ""
+        spans[-1] = f'{lead}<span class="cb-part cb-result">= <b>{escape(last)}</b></span>'
+    spoken = typeset.spoken(shown.name, shown.formula, shown.values, shown.result)
+    return f'<div class="cb-equation" aria-label="{escape(spoken)}">{" ".join(spans)}</div>'
+
+
+def grid(table: Grid) -> str:
+    """Return a table; the governing row is set in bold, totals stand under a rule."""
+    head = "".join(_cell("th", cell, number) for cell, number in _paired(table, table.heads))
+    body = "".join(
+        f'<tr class="cb-governs">{_cells(table, cells)}</tr>'
+        if place == table.governing
+        else f"<tr>{_cells(table, cells)}</tr>"
+        for place, cells in enumerate(table.rows)
+    )
+    foot = f"<tfoot><tr>{_cells(table, table.totals)}</tr></tfoot>" if table.totals else ""
+    return (
+        f'<div class="cb-scroll"><table class="cb-grid"><thead><tr>{head}</tr></thead>'
+        f"<tbody>{body}</tbody>{foot}</table></div>"
+    )
+
+
+def _paired(table: Grid, cells: tuple[Words, ...]) -> list[tuple[Words, bool]]:
+    return list(zip(cells, table.numeric, strict=True))
+
+
+def _cells(table: Grid, cells: tuple[Words, ...]) -> str:
+    return "".join(_cell("td", cell, number) for cell, number in _paired(table, cells))
+
+
+def _cell(tag: str, content: Words, number: bool) -> str:
+    kind = ' class="cb-number"' if number else ""
+    return f"<{tag}{kind}>{words(content)}</{tag}>"
+
+
+def figure(statement: Plain, item: Plain) -> str:
+    """Return a figure as a picture with its description, or why it cannot be drawn."""
+    try:
+        picture = drawn(statement, item)
+        told = figures.describe(statement, item)
+    except CalcbookError as error:
+        return trouble(f"the figure cannot be drawn: {error}")
+    code = base64.b64encode(picture).decode("ascii")
+    return f'<img class="cb-figure" alt="{escape(told)}" src="data:image/png;base64,{code}">'
