@@ -7,9 +7,10 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.pack import nodes, prose
 from calcbook.pack.anchors import items, printed_name
-from calcbook.pack.items import FROM_MEMORY, carried_words, judged, moved, option_words, verdict
+from calcbook.pack.items import FROM_MEMORY, carried_words, judged, moved, verdict
 from calcbook.pack.nodes import Node, link, page, phrase, strong, symbol, typed, words
 from calcbook.pack.schedules import named
+from calcbook.wording import option_words
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
@@ -196,7 +197,7 @@ def _unconfirmed(item: Item) -> list[Node]:
     if kind == "text":
         shown = item["text"]
     elif kind == "choice":
-        shown = option_words(item, item.get("option"))
+        shown = option_words(item)
     else:
         shown = nodes.value(item.get("value"))
     source = f"; {words(item['source'])}" if item.get("source") else ""

@@ -9,6 +9,7 @@ from calcbook import formula, typeset, units
 from calcbook.errors import PackError
 from calcbook.pack import nodes, schedules
 from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
+from calcbook.wording import option_words
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -105,7 +106,7 @@ class Writer:
         return {"t": "entry", "value": [value], "notes": confirmation(item)}
 
     def _choice(self, item: Item) -> dict[str, Any]:
-        value = typed(words(option_words(item, item.get("option"))))
+        value = typed(words(option_words(item)))
         return {"t": "entry", "value": [value], "notes": confirmation(item)}
 
     def _carried(self, item: Item) -> dict[str, Any]:
@@ -261,18 +262,10 @@ def confirmation(item: Item) -> list[list[Node]]:
     return [[strong("not confirmed"), source]]
 
 
-def option_words(item: Item, option: str | None) -> str:
-    """Return an option as the engineer reads it: its letter or name, and its words."""
-    if not option:
-        return "nothing chosen"
-    label = str((item.get("labels") or {}).get(option) or option)
-    return label if option.casefold() in label.casefold() else f"{option}: {label}"
-
-
 def carried_words(item: Item) -> list[Node]:
     """Return a carried value, option or text as it is shown."""
     if item.get("option") is not None:
-        return [words(option_words(item, item["option"]))]
+        return [words(option_words(item))]
     if item.get("text") is not None:
         return [words(item["text"] or "nothing carried")]
     return _equals(item.get("name"), nodes.value(item.get("value")))

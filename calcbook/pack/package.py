@@ -21,6 +21,7 @@ if TYPE_CHECKING:
 
 Statement = dict[str, Any]
 
+
 def pack_job(
     job: Job, progress: Callable[[str], None] | None = None
 ) -> tuple[bytes, list[Statement]]:
@@ -41,9 +42,7 @@ def pack_job(
     _take(runner)
     fresh = Runner(job)
     fresh.books = {
-        key: found
-        for key, found in runner.books.items()
-        if not found[1]["counts"]["stale"]  # type: ignore[index]
+        key: found for key, found in runner.books.items() if not found[1]["counts"]["stale"]
     }
     statements = [fresh.statement(workbook, mark) for workbook, mark in wanted]
     if progress is not None:

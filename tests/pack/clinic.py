@@ -85,7 +85,7 @@ def schedule(number: str, name: str, meaning: str, rows: list[str], **more: Any)
     given = {
         "key": "Level", "rows": rows, "confirmed": ["RA 2026-10-02"] * len(rows),
         "sources": [""] * len(rows), "fixed": False, "fallback": False, "stale": False,
-        "from": None, "columns": [], "errors": [], "governing": None,
+        "from": None, "columns": [], "errors": [], "governing": None, "envelope": [],
     }  # fmt: skip
     return item("schedule", number, name, meaning, **(given | more))
 
@@ -218,6 +218,8 @@ def wind_pressure(**more: object) -> Plain:
                 column("p_w", "pressure", "kPa", "computed", p, formula="q_h*K_z/K_h*G*C_p",
                        clause="Eq. 207B.4-1", result=True),
             ],
+            envelope=[{"row": "Roof", "which": "largest", "column": "p_w", "meaning": "External",
+                       "value": {"si": 1908.0, "value": 1.908, "unit": "kPa", "text": "1.908"}}],
             governing={"row": "Roof", "why": "largest p_w", "column": "p_w", "lines": [
                 line("5.2", "p_w", "Pressure at this level", "q_h*K_z/K_h*G*C_p",
                      values={"q_h": ("2.806", "kPa"), "K_z": ("1.099", ""), "K_h": ("1.099", ""),

@@ -158,7 +158,7 @@ def test_same_person_is_warned_of(checked: str) -> None:
         "not confirmed: template value",
         "confirmed RA 2026-10-02: drawing A-201",
         "250 km/h = 69.44 m/s",
-        "from design basis 1.4, p. 4",
+        "from design basis 1.4, p. 3",
         "Stale: was 15.2 m when taken, is now 15.6 m",
         "2.6, 2.7 not applied: roof is flat",
         "4 Roof zones: not applied: roof is flat",
