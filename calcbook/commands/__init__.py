@@ -1,0 +1,1 @@
+"""What each command does, one function of the parsed arguments per command."""

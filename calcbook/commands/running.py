@@ -1,0 +1,187 @@
+"""The ``run`` command: a workbook computed as it is, with other values, or for many cases."""
+
+# ruff: noqa: T201  a command prints
+
+from __future__ import annotations
+
+import json
+import sys
+from typing import TYPE_CHECKING
+
+from calcbook import cases, units
+from calcbook.commands import review
+from calcbook.commands.common import (
+    Progress,
+    Target,
+    assignments,
+    find_target,
+    needs_unit,
+    read_rows,
+)
+from calcbook.commands.report import text_report
+from calcbook.csvrows import read_cases
+from calcbook.errors import CalcbookError, JobError, near_match
+from calcbook.run import Filling, Runner, all_items
+from calcbook.statement import twelve
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+    from collections.abc import Mapping, Sequence
+    from pathlib import Path
+
+    import numpy as np
+
+    from calcbook.workbook import Workbook
+
+Plain = dict[str, object]
+
+
+def run(arguments: Namespace) -> int:
+    """Compute a workbook and print it; nothing is written.
+
+    Returns 1 when a check is not satisfied, 2 when something could not be computed.
+    """
+    target = find_target(arguments.workbook)
+    _refuse_unknown_mark(target)
+    sets = assignments(arguments.set)
+    filling = Filling(target.notebook, target.mark, sets=sets)
+    with Progress() as progress:
+        if arguments.rows:
+            book, _ = Runner(target.job).run(filling)
+            filling.rows = read_rows(arguments.rows, book)
+        book, statement = Runner(target.job, progress).run(filling, strict=True)
+        if arguments.cases is not None:
+            return _run_cases(book, arguments.cases, progress, as_json=arguments.json)
+    print(json.dumps(as_json(statement), indent=2) if arguments.json else text_report(statement))
+    sys.stdout.flush()
+    troubles = review.troubles(statement)
+    if troubles:
+        _say_troubles(book.name, troubles)
+        return 2
+    return 1 if review.not_satisfied(statement) else 0
+
+
+def _refuse_unknown_mark(target: Target) -> None:
+    """Refuse a mark the job has no record of: it would be computed with the template's values."""
+    job, name = target.job, target.notebook.stem
+    if target.mark is None or job is None:
+        return
+    marks = job.marks(name)
+    if target.mark not in marks:
+        hint = near_match(target.mark, marks) or f"it has: {', '.join(marks) or 'none'}"
+        raise JobError(f"{name} has no mark '{target.mark}' in this job", hint=hint)
+
+
+def _say_troubles(name: str, troubles: Sequence[str]) -> None:
+    things = "thing" if len(troubles) == 1 else "things"
+    print(f"calcbook: {name}: {len(troubles)} {things} could not be accepted or computed",
+          file=sys.stderr)  # fmt: skip
+    for text in troubles:
+        print(text, file=sys.stderr)
+
+
+# --- one case as JSON ---------------------------------------------------------------------------
+
+
+def as_json(statement: Mapping[str, object]) -> Plain:
+    """Return the results of a statement as plain data with 12 significant digits."""
+    items = [i for i in all_items(statement) if i["applies"]]
+    return {
+        "workbook": statement["workbook"], "mark": statement["mark"],
+        "fingerprint": statement["fingerprint"],
+        "values": {
+            str(i["name"]): _value(i["value"]) | {"sign": i["sign"]}
+            for i in items if i["kind"] == "line"
+        },
+        "schedules": {str(i["name"]): _schedule(i) for i in items if i["kind"] == "schedule"},
+        "checks": [
+            {"text": i["text"], "ratio": i["ratio"], "satisfied": i["satisfied"]}
+            for i in items if i["kind"] == "check"
+        ],
+        "entries": {
+            str(i["name"]): _entered(i) for i in items
+            if i["kind"] in {"entry", "choice", "text", "carried"}
+        },
+        "problems": review.troubles(statement),
+    }  # fmt: skip
+
+
+def _value(value: object) -> Plain:
+    found: Mapping[str, object] = value  # type: ignore[assignment]
+    return {"value": found["value"], "unit": found["unit"], "si": found["si"]}
+
+
+def _entered(item: Mapping[str, object]) -> Plain:
+    value: Plain = {"value": review.value_text(item)}
+    if "value" in item:
+        value = _value(item["value"])
+    if item["kind"] == "carried" and not item["fallback"]:
+        origin: Mapping[str, object] = item["from"]  # type: ignore[assignment]
+        return value | {"from": f"{origin['workbook']}.{origin['name']}"}
+    return value | {"confirmed": bool(item["confirmed"])}
+
+
+def _schedule(item: Mapping[str, object]) -> Plain:
+    columns: Sequence[Mapping[str, object]] = item["columns"]  # type: ignore[assignment]
+    return {"key": item["rows"], "columns": {str(c["name"]): _column(c) for c in columns}}
+
+
+def _column(column: Mapping[str, object]) -> Plain:
+    si: Sequence[float | None] = column["si"]  # type: ignore[assignment]
+    if "labels" in column:
+        return {"unit": "", "values": column["texts"], "si": si}
+    unit = units.unit(str(column["unit"]))
+    values = [None if v is None else twelve(v / unit.factor) for v in si]
+    return {"unit": unit.text, "values": values, "si": si}
+
+
+# --- many cases ---------------------------------------------------------------------------------
+
+
+def _run_cases(book: Workbook, path: Path, progress: Progress, *, as_json: bool) -> int:
+    progress(f"reading {path.name}")
+    known = {name: needs_unit(item) for name, item in cases.entries(book).items()}
+    read = read_cases(path, known)
+    columns = {name: [case[name] for case in read] for name in read[0]}
+    try:
+        progress(f"computing {len(read)} cases")
+        many, program = cases.read(book, columns), book.many()
+        found = cases.compute(program, many.values, many.rows)
+        results = cases.results(book, program, many, found)
+    except CalcbookError as error:
+        raise error.at(path.name) from None
+    failed = cases.failing(program, many, found)
+    progress("printing")
+    print(_cases_json(book, results) if as_json else _cases_csv(book, results))
+    for text, places in failed.items():
+        print(f"not satisfied: {text} in {len(places)} of {len(read)} cases, "
+              f"the first is case {places[0] + 1}", file=sys.stderr)  # fmt: skip
+    return 1 if failed else 0
+
+
+def _in_units(
+    book: Workbook, results: Mapping[str, np.ndarray]
+) -> list[tuple[str, str, list[str]]]:
+    """Return name, unit and values (12 significant digits; '' where not applied) of each result."""
+    found = []
+    for bound in cases.result_lines(book):
+        kind = bound.item.kind  # type: ignore[attr-defined]
+        unit = kind.si if book.system == "SI" else kind.us
+        values = (results[bound.name] / unit.factor).tolist()
+        found.append((bound.name, unit.text, ["" if v != v else f"{v:.12g}" for v in values]))  # noqa: PLR0124  nan
+    return found
+
+
+def _cases_csv(book: Workbook, results: Mapping[str, np.ndarray]) -> str:
+    columns = _in_units(book, results)
+    head = ",".join(f"{name} ({unit})" if unit else name for name, unit, _ in columns)
+    rows = map(",".join, zip(*(values for _, _, values in columns), strict=True))
+    return "\n".join([head, *rows])
+
+
+def _cases_json(book: Workbook, results: Mapping[str, np.ndarray]) -> str:
+    names = {
+        name: {"unit": unit, "values": [float(v) if v else None for v in values]}
+        for name, unit, values in _in_units(book, results)
+    }
+    return json.dumps({"names": names})

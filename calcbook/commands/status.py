@@ -1,0 +1,68 @@
+"""The ``status`` command: how each workbook of a job stands."""
+
+# ruff: noqa: T201  a command prints
+
+from __future__ import annotations
+
+import sys
+from typing import TYPE_CHECKING
+
+from calcbook.commands import review
+from calcbook.commands.common import Progress
+from calcbook.errors import CalcbookError
+from calcbook.job import Job
+from calcbook.run import Runner
+
+if TYPE_CHECKING:
+    from argparse import Namespace
+    from collections.abc import Mapping, Sequence
+
+
+def status(arguments: Namespace) -> int:
+    """Print checks, unconfirmed, missing and stale values of every workbook and mark of a job.
+
+    Returns 1 when a check is not satisfied, 2 when something could not be computed.
+    """
+    job = Job.load(arguments.folder)
+    failed: list[str] = []
+    checked = True
+    with Progress() as progress:
+        runner = Runner(job, progress)
+        for workbook, mark in review.fillings(job):
+            title = f"{workbook}:{mark}" if mark else workbook
+            try:
+                statement = runner.statement(workbook, mark)
+            except CalcbookError as error:
+                failed.append(f"{title} cannot be run: {error}")
+                continue
+            print(f"{title}: {summary(statement)}")
+            _print(statement, runner.books[workbook, mark][0].not_used())
+            checked = checked and not review.not_satisfied(statement)
+            troubles = review.troubles(statement)
+            failed += [f"{title}: {text}" for text in troubles]
+    for text in failed:
+        print(f"calcbook: {text}", file=sys.stderr)
+    return 2 if failed else 0 if checked else 1
+
+
+def summary(statement: Mapping[str, object]) -> str:
+    """Return the checks of a statement counted by verdict, in words."""
+    found = [review.verdict(check) for check in review.checks(statement)]
+    counts = [f"{found.count(word)} {word}" for word in dict.fromkeys(found)]
+    return f"checks: {', '.join(counts)}" if counts else "no checks"
+
+
+def _print(statement: Mapping[str, object], not_used: Sequence[str]) -> None:
+    for check in review.checks(statement):
+        if check["satisfied"] is not True:
+            ratio = f", ratio {check['ratio_text']}" if check["ratio_text"] else ""
+            print(f"  {review.verdict(check)}: {check['number']} {check['meaning']}, "
+                  f"{check['text']}{ratio}")  # fmt: skip
+    unconfirmed = review.unconfirmed(statement)
+    if unconfirmed:
+        print(f"  unconfirmed: {', '.join(unconfirmed)}")
+    for text in review.stale(statement):
+        print(f"  stale: {text}")
+    if not_used:
+        code: Mapping[str, object] = statement["code_set"]  # type: ignore[assignment]
+        print(f"  not used with {code['name']}: {', '.join(not_used)}")
