@@ -13,7 +13,9 @@ from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 
+from calcbook.keyed import lookup, lookup_rows, sum_for, sum_for_rows
 from calcbook.tree import (
+    KEYED,
     Binary,
     Call,
     Compare,
@@ -148,6 +150,8 @@ class _Writer:
     def call(self, node: Call) -> _Source:
         if node.function == "where":
             return self.where([self.write(arg) for arg in node.args])
+        if node.function in KEYED:
+            return self.keyed(node)
         parts = [self.write(arg) for arg in node.args]
         column = any(part.column for part in parts)
         gathers = node.function in _GATHERS and len(parts) == 1
@@ -158,6 +162,17 @@ class _Writer:
         )
         text = f"{name}({', '.join(part.text for part in parts)})"
         return _Source(text, _ATOM, column and not gathers)
+
+    def keyed(self, node: Call) -> _Source:
+        column, keys, key = node.args
+        wanted = (
+            _Source(repr(key.text), _ATOM, column=False)
+            if isinstance(key, Quoted)
+            else self.write(key)
+        )
+        name = f"f_{node.function}_rows" if wanted.column else f"f_{node.function}"
+        text = f"{name}({self.write(column).text}, {self.write(keys).text}, {wanted.text})"
+        return _Source(text, _ATOM, wanted.column)
 
     def where(self, parts: list[_Source]) -> _Source:
         column = any(part.column for part in parts)
@@ -210,15 +225,19 @@ def namespace(array: bool) -> dict[str, object]:
         ``ZeroDivisionError`` or ``OverflowError``; columns are arrays over axis 0.
         True: everything is an array, and what cannot be computed becomes nan or inf.
     """
+    by_key = {
+        "f_lookup": lookup, "f_lookup_rows": lookup_rows,
+        "f_sum_for": sum_for, "f_sum_for_rows": sum_for_rows,
+    }  # fmt: skip
     wide = {f"f_{name}": function for name, function in _WIDE.items()}
     shared = {f"f_{name}": function for name, function in _SHARED.items()}
     if array:
         gather = {f"f_{name}_over_rows": _over_rows(ufunc) for name, ufunc in _UFUNCS.items()}
-        return {**wide, **shared, **gather}
+        return {**wide, **shared, **gather, **by_key}
     rows = {f"{name}_rows": function for name, function in {**wide, **shared}.items()}
     single = {f"f_{name}": function for name, function in _SINGLE.items()}
     gathered = {f"f_{name}_over_rows": _over_rows_once(u) for name, u in _UFUNCS.items()}
-    return {**rows, **shared, **single, **gathered}
+    return {**rows, **shared, **single, **gathered, **by_key}
 
 
 def _least(first: float, *others: float) -> float:

@@ -12,6 +12,7 @@ from typing import TYPE_CHECKING
 from calcbook.errors import DimensionError, FormulaError, QuantityError, near_match
 from calcbook.signatures import RULES, Rules, Type, a_kind, example_unit, kind_of, raised, settled
 from calcbook.tree import (
+    KEYED,
     Binary,
     Call,
     Compare,
@@ -269,5 +270,7 @@ class _Checker(Rules):
             return self.interpolate(node)
         if node.function == "where":
             return self.where(node)
+        if node.function in KEYED:
+            return self.keyed(node)
         parts = [(arg, self.number(arg, f"{node.function}()")) for arg in node.args]
         return RULES[node.function](self, node, parts)

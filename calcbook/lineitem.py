@@ -7,7 +7,11 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from calcbook.bind import symbols
+from calcbook.formula import parse
+from calcbook.keyed import texts
+from calcbook.printer import place_of
 from calcbook.shown import plain_value
+from calcbook.tree import Call, Name, Quoted, names, walk
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -104,7 +108,25 @@ class LineWriter:
             one = self._operand(name, unit, row)
             if one is not None:
                 values[name] = {"text": one.text, "unit": unit.text}
-        return values
+        return values | self._looked_up(bound, formula, row)
+
+    def _looked_up(self, bound: Bound, formula: str, row: int | None) -> Plain:
+        """Return what a formula looks up in other schedules, under the place of each call."""
+        out: Plain = {}
+        for call in walk(parse(formula)):
+            if not isinstance(call, Call) or call.function != "lookup":
+                continue
+            column, keys, key = call.args
+            if not (isinstance(column, Name) and isinstance(keys, Name)):
+                continue
+            wanted = key.text if isinstance(key, Quoted) else self._word(names(key)[0], row)
+            known = texts(self.results.values.get(keys.name))
+            if wanted in known:
+                unit = self.shown.operand_unit(bound, column.name)
+                one = self.shown.column(column.name, unit)[known.index(wanted)]
+                if one is not None:
+                    out[place_of(call)] = {"text": one.text, "unit": unit.text}
+        return out
 
     def _operand(self, name: str, unit: Unit, row: int | None) -> Printed | None:
         home = self.shown.scope[name]

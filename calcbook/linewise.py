@@ -10,8 +10,9 @@ import numpy as np
 from calcbook.compile import OutsideTableError
 from calcbook.formula import parse
 from calcbook.items import Check, Line
+from calcbook.keyed import MissingRowError, texts
 from calcbook.program import decide
-from calcbook.tree import Logic, Not, gathered, names
+from calcbook.tree import KEYED, Call, Logic, Not, Quoted, gathered, names, walk
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -119,7 +120,10 @@ class LineByLine:
             cause = self._first_bad(names(node))
             if cause:
                 return f"not available because of {cause}"
+            keyed = _keyed_names(node)
             for name in names(node) if home is None else gathered(node):
+                if name in keyed:
+                    continue  # only the row that is asked for counts
                 for reason in self.found.row_problems.get(name, ()):
                     if reason and not self._follows(bound, node, name):
                         return f"not available because of {name} ({reason})"
@@ -158,7 +162,7 @@ class LineByLine:
             return "has no value: none of its cases holds"
         if bound.schedule is None:
             if not isinstance(value, float) or not math.isfinite(value):
-                return "has no finite value"
+                return self._missing_row(self._wanted(bound), 0) or "has no finite value"
             self.found.values[bound.name] = value
             return ""
         column = np.asarray(value, dtype=float) + np.zeros(self.rows[bound.schedule.rows])
@@ -183,18 +187,48 @@ class LineByLine:
         reasons = [""] * len(column)
         home = bound.schedule
         keys = self.keys.get(home.rows, ()) if home is not None else ()
-        for name in dict.fromkeys(n for node in self._wanted(bound) for n in names(node)):
+        wanted = self._wanted(bound)
+        own = [
+            n
+            for node in wanted
+            for n in names(node)
+            if home is None or self.program.scope[n].rows == home.rows
+        ]
+        for name in dict.fromkeys(own):
             for row, reason in enumerate(self.found.row_problems.get(name, ())):
                 if reason and row < len(reasons) and not reasons[row]:
                     reasons[row] = f"not available because of {name}"
         for row in map(int, np.flatnonzero(~np.isfinite(column))):
-            reasons[row] = reasons[row] or "has no finite value"
+            reasons[row] = reasons[row] or self._missing_row(wanted, row) or "has no finite value"
         if any(reasons):
             column[[bool(r) for r in reasons]] = math.nan
             named = [keys[n] if n < len(keys) else str(n + 1) for n in range(len(reasons))]
             self.found.row_problems[bound.name] = [
                 f"row {key}: {r}" if r else "" for key, r in zip(named, reasons, strict=True)
             ]
+
+    def _missing_row(self, wanted: Sequence[Node], row: int) -> str:
+        """Return which key, or which value at it, a row asks for in vain."""
+        for call in (part for node in wanted for part in walk(node)):
+            if not isinstance(call, Call) or call.function not in KEYED:
+                continue
+            column, keys, key = call.args
+            one = self._text(key, row)
+            home = ", ".join(names(keys))
+            known = texts(self.found.values.get(home))
+            if one not in known and call.function == "lookup":
+                return f"there is no row '{one}' in {home}"
+            for name in names(column):
+                reasons = self.found.row_problems.get(name, ())
+                if any(r and known[n] == one for n, r in enumerate(reasons)):
+                    return f"not available because of {name} of {one}"
+        return ""
+
+    def _text(self, key: Node, row: int) -> str:
+        if isinstance(key, Quoted):
+            return key.text
+        value = self.found.values.get(", ".join(names(key)))
+        return str(value[row]) if isinstance(value, np.ndarray) else str(value)
 
     def _check(self, step: Step) -> str:
         codes = step.sides or (step.branches[0][1],)
@@ -207,12 +241,18 @@ class LineByLine:
         return self.found.problems.get(step.bound.number, "")
 
 
+def _keyed_names(node: Node) -> set[str]:
+    """Return the names that stand in a function that finds rows by their key."""
+    calls = (p for p in walk(node) if isinstance(p, Call) and p.function in KEYED)
+    return {name for call in calls for name in names(call)}
+
+
 def _failure(error: Exception, idle: Sequence[str]) -> str:
     """Return why a formula gave nothing; ``idle`` are the names in it that do not apply."""
     if isinstance(error, TypeError):
         verb = "do" if len(idle) > 1 else "does"
         return f"not available because {' and '.join(idle) or 'a value'} {verb} not apply"
-    if isinstance(error, OutsideTableError):
+    if isinstance(error, (OutsideTableError, MissingRowError)):
         return f"has no value: {error}"
     reasons: dict[type[Exception], str] = {
         ZeroDivisionError: "a division by zero",

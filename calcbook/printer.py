@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING, ClassVar, NamedTuple
 
 from calcbook.symbols import Sign, read_figure, split_quantity, symbol_parts, unit_parts
 from calcbook.tree import (
+    KEYED,
     Binary,
     Call,
     Compare,
@@ -36,6 +37,12 @@ class Printed:
 
     text: str
     unit: str = ""
+
+
+def place_of(node: Node) -> str:
+    """Return the key under which ``values`` holds what a part of a formula gives as a whole."""
+    start, end = node.span
+    return f"{start}:{end}"
 
 
 class Piece(NamedTuple):
@@ -287,6 +294,8 @@ class Printer(ABC):
         """Write a function the way it is written on paper."""
         if node.function == "interpolate":
             return self.looked_up(node)
+        if node.function in KEYED:
+            return self.by_key(node)
         whole = node.function in _WHOLE or (node.function in _WHOLE_ALONE and len(node.args) == 1)
         values = self.values
         if whole:
@@ -322,3 +331,23 @@ class Printer(ABC):
         if symbol_parts(name)[0].kind == "word":
             return self.words(name.replace("_", " "))
         return self.symbol(name)
+
+    def by_key(self, node: Call) -> Piece:
+        """Write a value, or a sum, of the rows another schedule has for a key.
+
+        A value looked up stands in ``values`` under the place of the call in its formula.
+        """
+        found = self.values.get(place_of(node))
+        if found is not None:
+            return self.value(found.text, found.unit)
+        column, keys, key = node.args
+        values, self.values = self.values, {}
+        source, home = self.inside(self.write(column), PRODUCT), self.write(keys).text
+        self.values = values
+        wanted = self.words(key.text) if isinstance(key, Quoted) else self.write(key).text
+        where = self.row(home, self.operator("="), wanted)
+        if node.function == "lookup":
+            return Piece(self.row(source, self.fence("()", where)), ATOM, "other", "other")
+        inner = self.row(source, self.words(" where "), where)
+        name = self.operator("∑").strip()
+        return Piece(self.applied(name, [inner]), ATOM, "other", "other")

@@ -23,6 +23,7 @@ from calcbook.errors import CalcbookError, CarryError, InputError, JobError, nea
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
 from calcbook.job import Job, templates
+from calcbook.marks import gathered
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
@@ -32,6 +33,7 @@ if TYPE_CHECKING:
     from calcbook.record import CarriedRecord, EntryRecord, Record, RowRecord
 
 BASIS = "design-basis"
+ALL_MARKS = "*"
 LIBRARIES = ("calcbook", "numpy", "pint", "sympy", "matplotlib", "typst", "nbconvert", "ipywidgets")
 Plain = dict[str, Any]
 
@@ -160,6 +162,8 @@ class Runner:
         if self.job is None or workbook not in self.job.workbooks:
             return None
         try:
+            if name == ALL_MARKS:
+                return self._over_marks(origin, workbook, taken)
             statement = self.statement(workbook)
         except CarryError:
             raise
@@ -174,14 +178,15 @@ class Runner:
                 None,
                 problem=f"{workbook} has no result '{name}'" + (f"; {hint}" if hint else ""),
             )
-        former = taken.get(origin)
-        moved = former is not None and former.fingerprint != item_digest(item)
-        return Carried(
-            origin,
-            item,
-            str(statement["fingerprint"]),
-            taken={"text": former.value} if former is not None and moved else None,
-        )
+        return _carried(origin, item, str(statement["fingerprint"]), taken)
+
+    def _over_marks(
+        self, origin: str, workbook: str, taken: Mapping[str, CarriedRecord]
+    ) -> Carried:
+        """Return one schedule over all marks of a workbook."""
+        marks = self.job.marks(workbook) if self.job is not None else ()
+        item = gathered(workbook, {mark: self.statement(workbook, mark) for mark in marks})
+        return _carried(origin, item, item_digest(item), taken)
 
     def settings(self, workbook: str, filling: Filling) -> tuple[CodeSet, str]:
         """Return the code set and the unit system a workbook is opened with."""
@@ -258,6 +263,16 @@ _CURRENT: ContextVar[Opening | None] = ContextVar("opening", default=None)
 def opening() -> Opening | None:
     """Return the run in progress, or None where a notebook is run by a person."""
     return _CURRENT.get()
+
+
+def _carried(
+    origin: str, item: Plain, fingerprint: str, taken: Mapping[str, CarriedRecord]
+) -> Carried:
+    """Return a result brought forward, with what was taken last where that differs."""
+    former = taken.get(origin)
+    moved = former is not None and former.fingerprint != item_digest(item)
+    old = {"text": former.value} if former is not None and moved else None
+    return Carried(origin, item, fingerprint, taken=old)
 
 
 def inputs_of(record: Record, job_number: str) -> Inputs:

@@ -8,7 +8,7 @@ from fractions import Fraction
 from typing import TYPE_CHECKING, NoReturn, cast
 
 from calcbook.errors import DimensionError, FormulaError
-from calcbook.tree import Call, Name, Node, Number
+from calcbook.tree import Call, Name, Node, Number, Quoted
 from calcbook.units import DIMENSIONLESS, KINDS, Dimension, dimension_name, unit
 
 if TYPE_CHECKING:
@@ -161,6 +161,22 @@ class Rules(ABC):
         other = next((f for _, f in parts if f.dimension != first.dimension), first)
         what = f"{node.function}() needs one kind of quantity, not {kind_of(first)}"
         self.equal(parts, f"{what} and {kind_of(other)}")
+
+    def keyed(self, node: Call) -> Type:
+        """Return the type of ``lookup(column, keys, key)`` and ``sum_for(column, keys, key)``."""
+        source, keys, key = node.args
+        column, names = self.number(source, f"{node.function}()"), self.type(keys)
+        example = f"{node.function}(gamma, material, 'steel')"
+        if column.rows is None:
+            self.refuse(f"{node.function}() reads a column of a schedule", example, source)
+        if names.form != "text" or names.rows != column.rows:
+            what = f"{node.function}() needs the keys of the rows of that column"
+            self.refuse(what, f"name a column of words of the same schedule: {example}", keys)
+        wanted = None if isinstance(key, Quoted) else self.type(key)
+        if wanted is not None and wanted.form != "text":
+            what = f"{node.function}() finds a row by words, and this is {a_kind(wanted)}"
+            self.refuse(what, example, key)
+        return Type("number", column.dimension, wanted.rows if wanted is not None else None)
 
     def interpolate(self, node: Call) -> Type:
         """Return the type of ``interpolate(table, x[, y])``."""

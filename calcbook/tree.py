@@ -22,6 +22,7 @@ FUNCTIONS: dict[str, tuple[int, int | None]] = {
     "interpolate": (2, 3),
     "ln": (1, 1),
     "log10": (1, 1),
+    "lookup": (3, 3),
     "max": (1, None),
     "min": (1, None),
     "previous": (2, 2),
@@ -29,6 +30,7 @@ FUNCTIONS: dict[str, tuple[int, int | None]] = {
     "sin": (1, 1),
     "sqrt": (1, 1),
     "sum": (1, 1),
+    "sum_for": (3, 3),
     "tan": (1, 1),
     "where": (3, 3),
 }
@@ -138,6 +140,10 @@ def children(node: Node) -> tuple[Node, ...]:
             return (first, *(part for _, part in rest))
         case _:
             return ()
+
+
+#: Functions that find rows of another schedule by their key: (column, its keys, the key wanted).
+KEYED = frozenset({"lookup", "sum_for"})
 
 
 def gathers(node: Node) -> bool:

@@ -10,7 +10,7 @@ from calcbook.job import Job
 from calcbook.pack.compile import make_pack
 from calcbook.pack.cover import Cover
 from calcbook.record import CarriedRecord, update
-from calcbook.run import BASIS, Filling, Runner, all_items, carries, find_item, item_digest
+from calcbook.run import BASIS, Filling, Runner, all_items, carries, item_digest
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -107,10 +107,10 @@ def _carried_now(runner: Runner, book: Workbook) -> dict[str, CarriedRecord]:
         workbook, _, name = origin.partition(".")
         if runner.job is None or workbook not in runner.job.workbooks:
             continue
-        item = find_item(runner.statement(workbook), name)
-        if item is None:
+        found = runner.carried(origin, {})
+        if found is None or found.item is None:
             raise CarryError(f"{workbook} has no result '{name}'", where=book.name)
-        now[origin] = _taken(origin, item)
+        now[origin] = _taken(origin, found.item)
     return now
 
 
