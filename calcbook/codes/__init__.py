@@ -5,9 +5,12 @@ from __future__ import annotations
 import importlib
 
 from calcbook.codes.clause import Clause, CodeSet, Stated
+from calcbook.codes.combinations import Combination
+from calcbook.codes.materials import Material
+from calcbook.codes.uses import Use
 from calcbook.errors import CodeSetError, near_match
 
-__all__ = ["Clause", "CodeSet", "Stated", "get", "names"]
+__all__ = ["Clause", "CodeSet", "Combination", "Material", "Stated", "Use", "get", "names"]
 
 _MODULES = {
     "NSCP 2015": "nscp_2015",

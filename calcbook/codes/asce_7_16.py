@@ -5,6 +5,7 @@ Against the edition before, air density at the site's elevation enters the veloc
 
 from __future__ import annotations
 
+from calcbook.codes import gravity_asce_7_16 as gravity
 from calcbook.codes import wind_directional
 from calcbook.codes.clause import Clause, CodeSet
 
@@ -55,6 +56,7 @@ _ELEVATION = Clause(
 _CLAUSES = {
     **wind_directional.clauses("ASCE 7-16", _NUMBERS, _DIFFERENT),
     _ELEVATION.subject: _ELEVATION,
+    **gravity.CLAUSES,
 }
 _TABLES, _TABLES_US = wind_directional.tables(_CLAUSES)
 
@@ -68,4 +70,7 @@ CODE_SET = CodeSet(
     clauses=_CLAUSES,
     tables=_TABLES,
     tables_us=_TABLES_US,
+    combination_lists=gravity.COMBINATIONS,
+    use_list=gravity.USES,
+    material_list=gravity.MATERIALS,
 )

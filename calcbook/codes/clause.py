@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass, field, replace
+from dataclasses import dataclass, field, fields, replace
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Any, NamedTuple, TypeVar
 
+from calcbook.codes.combinations import reduced_to
 from calcbook.errors import CodeSetError, near_match
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping
+    from collections.abc import Collection, Iterable, Mapping
 
+    from calcbook.codes.combinations import Combination
+    from calcbook.codes.materials import Material
+    from calcbook.codes.uses import Use
     from calcbook.table import Table
 
 Cases = tuple[tuple[str, str], ...]
@@ -202,6 +206,10 @@ class CodeSet:
         By subject. A clause whose formula looks a table up has that table under its own subject.
     tables_us
         The tables whose printed numbers differ in US customary units.
+    combination_lists
+        Load combinations under 'strength' and 'service', in the order of the code.
+    use_list, material_list
+        Uses with their live loads and materials with their weights, by name.
     """
 
     name: str
@@ -210,11 +218,16 @@ class CodeSet:
     clauses: Mapping[str, Clause]
     tables: Mapping[str, Table]
     tables_us: Mapping[str, Table]
+    combination_lists: Mapping[str, tuple[Combination, ...]]
+    use_list: Mapping[str, Use]
+    material_list: Mapping[str, Material]
 
     def __post_init__(self) -> None:
         """Freeze the mappings."""
-        for part in ("clauses", "tables", "tables_us"):
-            object.__setattr__(self, part, MappingProxyType(dict(getattr(self, part))))
+        for part in fields(self):
+            if part.name not in ("name", "title", "note"):
+                frozen = MappingProxyType(dict(getattr(self, part.name)))
+                object.__setattr__(self, part.name, frozen)
 
     def has(self, subject: str) -> bool:
         """Return whether the edition has a clause on the subject."""
@@ -248,6 +261,32 @@ class CodeSet:
         """Return the table on a subject; raises CodeSetError when there is none."""
         table = self._found(self.tables, subject, "table")
         return self.tables_us.get(subject, table) if in_us(system) else table
+
+    def combinations(
+        self, kind: str, cases: Collection[str] | None = None
+    ) -> tuple[Combination, ...]:
+        """Return the load combinations for 'strength' or 'service', in the order of the code.
+
+        Parameters
+        ----------
+        cases
+            The load cases present; see `reduced_to` for what is then left out. All by default.
+
+        Raises
+        ------
+        CodeSetError
+            There is no such kind of combination, or no load case of a name.
+        """
+        listed = self._found(self.combination_lists, kind, "list of load combinations")
+        return listed if cases is None else reduced_to(listed, cases)
+
+    def uses(self) -> Mapping[str, Use]:
+        """Return the uses the edition lists with their live loads, by name."""
+        return self.use_list
+
+    def materials(self) -> Mapping[str, Material]:
+        """Return the materials with their weights, by name."""
+        return self.material_list
 
     def _found(self, known: Mapping[str, _Part], subject: str, what: str) -> _Part:
         if subject not in known:

@@ -6,6 +6,7 @@ metric units with heights rounded.
 
 from __future__ import annotations
 
+from calcbook.codes import gravity_nscp_2015 as gravity
 from calcbook.codes import wind_directional
 from calcbook.codes.clause import CodeSet
 
@@ -37,7 +38,10 @@ _DIFFERENT = {
     },
 }
 
-_CLAUSES = wind_directional.clauses("NSCP 2015", _NUMBERS, _DIFFERENT)
+_CLAUSES = {
+    **wind_directional.clauses("NSCP 2015", _NUMBERS, _DIFFERENT),
+    **gravity.CLAUSES,
+}
 _TABLES, _TABLES_US = wind_directional.tables(_CLAUSES)
 
 CODE_SET = CodeSet(
@@ -50,4 +54,7 @@ CODE_SET = CodeSet(
     clauses=_CLAUSES,
     tables=_TABLES,
     tables_us=_TABLES_US,
+    combination_lists=gravity.COMBINATIONS,
+    use_list=gravity.USES,
+    material_list=gravity.MATERIALS,
 )

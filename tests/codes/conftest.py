@@ -24,16 +24,22 @@ OPTIONS = {
     "exposure": ("B", "C", "D"),
     "hill": ("none", "ridge", "escarpment", "axisymmetric hill"),
     "enclosure": ("enclosed", "partially enclosed"),
+    "member": (
+        *("interior column", "exterior column", "edge column with cantilever slab"),
+        *("corner column with cantilever slab", "interior beam", "edge beam", "other member"),
+    ),
+    "parking": ("not reduced", "as the code permits"),
 }
 KINDS = {
     "length": ("z", "z_g", "z_e", "h", "L", "B", "H", "H_min", "L_h", "L_e", "x"),
     "number": (
         *("alpha", "r_1", "K_1", "K_2", "K_3", "gamma", "mu"),
         *("K_z", "K_zt", "K_d", "K_e", "G", "C_p", "GC_pi"),
+        *("K_LL", "n_f", "R_1", "R_2", "F"),
     ),
-    "pressure": ("q", "q_i"),
+    "pressure": ("q", "q_i", "L_o", "D_o"),
     "speed": ("V",),
-    "area": ("A",),
+    "area": ("A", "A_T", "A_I"),
     "angle": ("theta",),
 }
 TABLES = {
@@ -51,8 +57,9 @@ TABLES = {
 
 
 def scope(code: CodeSet, system: str) -> dict[str, Type]:
-    """Return the types of all symbols that wind clauses use."""
-    types = {name: Type("text", None, None, options=o) for name, o in OPTIONS.items()}
+    """Return the types of all symbols that clauses use."""
+    options = {**OPTIONS, "use": tuple(code.uses())}
+    types = {name: Type("text", None, None, options=o) for name, o in options.items()}
     for what, symbols in KINDS.items():
         types |= {name: Type("number", kind(what).dimension, None) for name in symbols}
     for name, subject in TABLES.items():
