@@ -25,24 +25,41 @@ def texts(keys: object) -> list[str]:
     return [str(key) for key in np.asarray(keys, dtype=object).reshape(-1)]
 
 
-def lookup(column: Array, keys: object, key: str) -> float | Array:
+def lookup(column: Array, keys: object, key: str | NDArray[np.str_]) -> float | Array:
     """Return the value of the row whose key is the one given.
 
-    Raises MissingRowError where no row has it: a value is never made up.
+    With a key for each of many cases, as an array, the values are an array (cases,), nan where no
+    row has the key. Raises MissingRowError where no row has a single key: a value is never made up.
     """
     rows = texts(keys)
+    if isinstance(key, np.ndarray):
+        return _by_case(np.asarray(column, dtype=float), rows, key)
     if str(key) not in rows:
         raise MissingRowError(f"there is no row '{key}'")
     found = np.asarray(column, dtype=float)[rows.index(str(key))]
     return float(found) if found.ndim == 0 else found
 
 
+def _by_case(values: Array, rows: list[str], keys: NDArray[np.str_]) -> Array:
+    """Return for each case the value of the row its key names, from (rows, 1) or (rows, cases)."""
+    place = {key: row for row, key in reversed(list(enumerate(rows)))}
+    wide = values.reshape(len(rows), -1)
+    cases = max(len(keys), wide.shape[1])
+    found = np.array([place.get(str(key), -1) for key in np.broadcast_to(keys, cases)])
+    wide = np.broadcast_to(wide, (len(rows), cases))
+    return np.where(found < 0, math.nan, wide[found, np.arange(cases)])
+
+
 def lookup_rows(column: Array, keys: object, wanted: object) -> Array:
     """Return, for each key wanted, the value of its row; nan where no row has it."""
     place = {key: row for row, key in reversed(list(enumerate(texts(keys))))}
     values = np.asarray(column, dtype=float)
-    none = np.full(values.shape[1:], math.nan)
-    return np.array([values[place[k]] if k in place else none for k in texts(wanted)])
+    rows = np.array([place.get(key, -1) for key in texts(wanted)], dtype=int)
+    if np.array_equal(rows, np.arange(len(values))):
+        return values  # the same rows in the same order
+    found: Array = values[rows]
+    found[rows < 0] = math.nan
+    return found
 
 
 def sum_for(column: Array, keys: object, key: str) -> float | Array:
