@@ -316,6 +316,7 @@ class Binder:
         known = [c.name for c in bound.columns if not c.problem]
         every = [c.name for c in item.columns]
         asked = [*item.totals, *(c for c, _ in item.governing), *([item.order] * bool(item.order))]
+        asked += item.distinct
         for name in dict.fromkeys(asked):
             if name not in every:
                 hint = near_match(name, known) or f"it has {', '.join(known)}"

@@ -43,6 +43,7 @@ if TYPE_CHECKING:
 _OR, _AND, _NOT, _COMPARE, _SUM, _PRODUCT, _MINUS, _POWER, _ATOM = range(9)
 _LEVEL = {"+": _SUM, "-": _SUM, "*": _PRODUCT, "/": _PRODUCT, "**": _POWER}
 _GATHERS = {"sum", "min", "max"}
+_WIDE_CASES = 64
 
 
 def python_source(
@@ -318,7 +319,14 @@ def _following(column: Array, last: Array | float) -> Array:
 
 
 def _running(column: Array) -> Array:
-    return np.cumsum(column, axis=0)
+    if column.ndim == 1 or column.shape[1] < _WIDE_CASES or not len(column):
+        return np.cumsum(column, axis=0)
+    # Whole rows added one after the other: the same sums, read in the order they lie in memory.
+    total = np.empty(column.shape)
+    total[0] = column[0]
+    for row in range(1, len(column)):
+        np.add(total[row - 1], column[row], out=total[row])
+    return total
 
 
 def _over_rows(ufunc: np.ufunc) -> Callable[[Array], Array]:

@@ -1,4 +1,4 @@
-"""What a result stands on, as a digest: inputs as typed, formulas, code set and engine."""
+"""Digests: of what a result stands on (inputs, formulas, code set, engine), of what is carried."""
 
 from __future__ import annotations
 
@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING, Any
 from calcbook.items import Check, Line, Schedule, TableItem
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
 
     from calcbook.bind import Bound
     from calcbook.workbook import Workbook
@@ -67,3 +67,27 @@ def _formulas(bound: Bound) -> list[object]:
         axes = [[a.name, a.unit.text, list(a.points)] for a in item.table.axes]
         basis += [axes, item.table.values, item.table.unit.text, item.table.outside]
     return basis
+
+
+def item_digest(item: Mapping[str, Any]) -> str:
+    """Return a digest of what is carried: value, unit and sign sense, or rows and columns."""
+    value: Mapping[str, Any] = item.get("value") or {}
+    columns: Sequence[Mapping[str, Any]] = item.get("columns") or ()
+    basis = [
+        value.get("si"),
+        value.get("unit"),
+        item.get("option"),
+        item.get("text"),
+        item.get("sign"),
+        item.get("rows"),
+        [
+            [
+                c["name"],
+                c["unit"],
+                c["si"],
+                c["texts"] if c["si"] == [None] * len(c["texts"]) else 0,
+            ]
+            for c in columns
+        ],
+    ]
+    return hashlib.sha256(json.dumps(basis, sort_keys=True).encode()).hexdigest()[:16]

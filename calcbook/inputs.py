@@ -109,6 +109,9 @@ class Reader:
                 self._carry(b.item)
             elif isinstance(b.item, (Entry, Choice, Text)):
                 self._entry(b.item, b.item.value)
+        for b in bound:
+            if isinstance(b.item, Schedule) and b.item.distinct:
+                self._refuse_alike(b, b.item.distinct)
         return self.found
 
     def _entry(self, item: Item, default: str) -> None:
@@ -195,8 +198,11 @@ class Reader:
             return []
         keys = [str(key) for key in source["rows"]]
         entered = any(isinstance(c, (Entry, Choice, Text)) for c in item.columns)
-        if typed is None or not entered:
+        if not entered:
             return [GivenRow(key, {}, confirmed="carried") for key in keys]
+        if typed is None:
+            cells = dict(item.default)  # the template's rows serve, unconfirmed, until typed
+            return [GivenRow(key, cells.get(key, {}), item.source) for key in keys]
         by_key = {row.key: row for row in typed}
         missing = [key for key in keys if key not in by_key]
         extra = [key for key in by_key if key not in keys]
@@ -281,6 +287,21 @@ class Reader:
             return
         numbers = [math.nan if v is None else float(v) for v in column["si"]]
         self.found.values[item.name] = np.array(numbers)
+
+    def _refuse_alike(self, bound: Bound, columns: Sequence[str]) -> None:
+        """Mark the rows that say the same in these columns as a row before them."""
+        if not all(name in self.found.words for name in columns):
+            return
+        first: dict[tuple[str, ...], str] = {}
+        keys = self.found.keys[bound.rows]
+        reasons = list(self.found.row_problems.get(columns[-1], [""] * len(keys)))
+        told = zip(*(self.found.words[name] for name in columns), strict=True)
+        for row, (key, words) in enumerate(zip(keys, told, strict=True)):
+            other = first.setdefault(words, key)
+            if other != key and any(words):
+                reasons[row] = f"{key} is at {'-'.join(words)}, where {other} is already"
+        if any(reasons):
+            self.found.row_problems[columns[-1]] = reasons
 
     def _refuse_disorder(self, bound: Bound, rows: Sequence[GivenRow]) -> None:
         schedule = bound.schedule.item if bound.schedule is not None else None

@@ -166,6 +166,7 @@ class Schedule(Item):
     ``columns`` are Entry, Text, Choice, Carry or Line items. ``default`` holds the template's
     rows as (key, {column: text}). ``origin`` brings the rows forward from another workbook,
     ``same_rows`` shares the rows of a schedule of this one, ``fixed`` rows belong to the method.
+    No two rows may have the same values in the columns of ``distinct`` together.
     """
 
     key: str = ""
@@ -179,6 +180,7 @@ class Schedule(Item):
     governing: list[tuple[str, str]] = field(default_factory=list)
     order: str = ""
     ascending: bool = False
+    distinct: tuple[str, ...] = ()
     source: str = ""
 
 

@@ -11,7 +11,7 @@ from calcbook.formula import parse
 from calcbook.keyed import texts
 from calcbook.printer import place_of
 from calcbook.shown import plain_value
-from calcbook.tree import Call, Name, Quoted, names, walk
+from calcbook.tree import KEYED, Call, Name, Quoted, names, walk
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -111,15 +111,22 @@ class LineWriter:
         return values | self._looked_up(bound, formula, row)
 
     def _looked_up(self, bound: Bound, formula: str, row: int | None) -> Plain:
-        """Return what a formula looks up in other schedules, under the place of each call."""
+        """Return what a formula looks up in other schedules, under the place of each call.
+
+        A row's own key, by which rows of another schedule are found, stands under its name.
+        """
         out: Plain = {}
         for call in walk(parse(formula)):
-            if not isinstance(call, Call) or call.function != "lookup":
+            if not isinstance(call, Call) or call.function not in KEYED:
                 continue
             column, keys, key = call.args
+            wanted = key.text if isinstance(key, Quoted) else self._word(names(key)[0], row)
+            if isinstance(key, Name) and wanted:
+                out[key.name] = {"text": wanted, "unit": ""}
+            if call.function != "lookup":
+                continue
             if not (isinstance(column, Name) and isinstance(keys, Name)):
                 continue
-            wanted = key.text if isinstance(key, Quoted) else self._word(names(key)[0], row)
             known = texts(self.results.values.get(keys.name))
             if wanted in known:
                 unit = self.shown.operand_unit(bound, column.name)

@@ -12,7 +12,7 @@ from calcbook.formula import parse
 from calcbook.items import Check, Line
 from calcbook.keyed import MissingRowError, texts
 from calcbook.program import decide
-from calcbook.tree import KEYED, Call, Logic, Not, Quoted, gathered, names, walk
+from calcbook.tree import KEYED, Call, Logic, Not, Quoted, accumulated, gathered, names, walk
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -132,7 +132,7 @@ class LineByLine:
     def _follows(self, bound: Bound, node: Node, name: str) -> bool:
         """Whether a column takes another row by row, so that only some of its rows are missing."""
         own = bound.schedule is not None and self.program.scope[name].rows == bound.schedule.rows
-        return own and name not in gathered(node)
+        return own and (name not in gathered(node) or name in accumulated(node))
 
     def _wanted(self, bound: Bound) -> list[Node]:
         """Return the formulas and conditions that decide a value; no case that does not hold."""
@@ -156,6 +156,8 @@ class LineByLine:
         try:
             value = self._value(step)
         except (ArithmeticError, ValueError, TypeError) as error:
+            if isinstance(error, MissingRowError):
+                return f"has no value: {self._missing_row(self._wanted(bound), 0) or error}"
             idle = [n for n in bound.needs if self.found.values.get(n, 0) is None]
             return _failure(error, idle)
         if value is None:
@@ -194,18 +196,35 @@ class LineByLine:
             for n in names(node)
             if home is None or self.program.scope[n].rows == home.rows
         ]
+        runs = frozenset[str]().union(*map(accumulated, wanted))
         for name in dict.fromkeys(own):
-            for row, reason in enumerate(self.found.row_problems.get(name, ())):
-                if reason and row < len(reasons) and not reasons[row]:
+            bad = [bool(reason) for reason in self.found.row_problems.get(name, ())]
+            for row in range(min(len(bad), len(reasons))):
+                lacks = any(bad[: row + 1]) if name in runs else bad[row]
+                if lacks and not reasons[row]:
                     reasons[row] = f"not available because of {name}"
         for row in map(int, np.flatnonzero(~np.isfinite(column))):
-            reasons[row] = reasons[row] or self._missing_row(wanted, row) or "has no finite value"
+            missing = reasons[row] or self._missing_row(self._holding(bound, row) or wanted, row)
+            reasons[row] = missing or "has no finite value"
         if any(reasons):
             column[[bool(r) for r in reasons]] = math.nan
             named = [keys[n] if n < len(keys) else str(n + 1) for n in range(len(reasons))]
             self.found.row_problems[bound.name] = [
                 f"row {key}: {r}" if r else "" for key, r in zip(named, reasons, strict=True)
             ]
+
+    def _holding(self, bound: Bound, row: int) -> list[Node]:
+        """Return the formula of the case that holds in a row of a column, if that can be said."""
+        tests = (test for test, _ in self.program.step(bound).branches)
+        for test, (_, node) in zip(tests, bound.branches, strict=True):
+            try:
+                held = True if test is None else self.program.run(test, self.found.values)
+            except (ArithmeticError, ValueError, TypeError):
+                return []
+            every = np.atleast_1d(np.asarray(held, dtype=bool))
+            if every[row if len(every) > 1 else 0]:
+                return [node]
+        return []
 
     def _missing_row(self, wanted: Sequence[Node], row: int) -> str:
         """Return which key, or which value at it, a row asks for in vain."""

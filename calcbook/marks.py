@@ -9,6 +9,7 @@ if TYPE_CHECKING:
 
 Plain = dict[str, Any]
 NUMBERS = {"entry", "line", "carried"}
+_FIRST = "; make one with: calcbook set {}:C-1 NAME=VALUE"
 
 
 def gathered(workbook: str, statements: Mapping[str, Mapping[str, Any]]) -> Plain:
@@ -23,8 +24,9 @@ def gathered(workbook: str, statements: Mapping[str, Mapping[str, Any]]) -> Plai
 
     Returns
     -------
-    A schedule item whose columns are the named entries, choices, words and lines of the workbook;
-    a mark in which one has no value has the reason in the column's ``problem``.
+    A schedule item whose columns are the named entries, choices, words and lines of the workbook,
+    and under 'column.largest' and the like the row that governs a column of a schedule of it; a
+    mark in which one has no value has the reason in the column's ``problem``.
     """
     by_mark = {mark: dict(_named(statement)) for mark, statement in statements.items()}
     found = dict.fromkeys(name for items in by_mark.values() for name in items)
@@ -34,7 +36,7 @@ def gathered(workbook: str, statements: Mapping[str, Mapping[str, Any]]) -> Plai
         "number": "",
         "meaning": f"marks of {workbook.replace('-', ' ')}",
         "applies": True,
-        "problem": None if by_mark else f"{workbook} has no marks yet",
+        "problem": None if by_mark else f"{workbook} has no marks yet{_FIRST.format(workbook)}",
         "rows": list(by_mark),
         "columns": [_column(name, by_mark) for name in found],
     }
@@ -45,6 +47,8 @@ def _named(statement: Mapping[str, Any]) -> Iterator[tuple[str, Plain]]:
         for item in part.get("items", ()):
             if item["name"] and item["kind"] in {*NUMBERS, "choice", "text"}:
                 yield item["name"], item
+            for extreme in item.get("envelope", ()):
+                yield f"{extreme['column']}.{extreme['which']}", {**item, "text": extreme["row"]}
 
 
 def _column(name: str, by_mark: Mapping[str, Mapping[str, Plain]]) -> Plain:

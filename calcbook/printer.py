@@ -25,6 +25,8 @@ from calcbook.tree import (
     Not,
     Number,
     Quoted,
+    names,
+    walk,
 )
 
 if TYPE_CHECKING:
@@ -43,6 +45,11 @@ def place_of(node: Node) -> str:
     """Return the key under which ``values`` holds what a part of a formula gives as a whole."""
     start, end = node.span
     return f"{start}:{end}"
+
+
+def substituted(node: Node) -> set[str]:
+    """Return under what names ``values`` may hold a value for a part of a formula."""
+    return {*names(node), *(place_of(part) for part in walk(node) if isinstance(part, Call))}
 
 
 class Piece(NamedTuple):
@@ -347,7 +354,11 @@ class Printer(ABC):
         wanted = self.words(key.text) if isinstance(key, Quoted) else self.write(key).text
         where = self.row(home, self.operator("="), wanted)
         if node.function == "lookup":
-            return Piece(self.row(source, self.fence("()", where)), ATOM, "other", "other")
+            return Piece(self.of_row(source, where), ATOM, "other", "other")
         inner = self.row(source, self.words(" where "), where)
         name = self.operator("∑").strip()
         return Piece(self.applied(name, [inner]), ATOM, "other", "other")
+
+    def of_row(self, column: str, where: str) -> str:
+        """Write a column with the row that is meant in brackets."""
+        return self.row(column, self.fence("()", where))

@@ -100,7 +100,9 @@ class Program:
         computed = {b.name for b in self.lines}
         self.inputs = [n for n, kind in scope.items() if n not in computed and kind.form != "truth"]
         self.rows = list(dict.fromkeys(b.rows for b in self.bound if b.rows))
-        self.space = namespace(array=array) | {"_where": np.where, "_nan": math.nan}
+        self.space = namespace(array=array) | {
+            "_where": np.where, "_pick": _pick, "_column": _column, "_nan": math.nan
+        }  # fmt: skip
         self._source = Source(self.bound, scope, array=array)
         self._function = self._compile()
         self._given = _picker(self.inputs)
@@ -227,6 +229,26 @@ class Program:
         """Evaluate one compiled formula with the values given."""
         with np.errstate(all="ignore"):
             return eval(code, self.space, _Names(values))  # type: ignore[no-any-return]  # noqa: S307  compiled from a checked tree
+
+
+def _pick(test: Any, value: Callable[[], Any], other: Callable[[], Any]) -> Any:  # noqa: ANN401
+    """Return one of two values, by case where the test differs from case to case.
+
+    Where it does not, only the value that is asked for is computed.
+    """
+    if np.size(test) != 1:
+        return np.where(test, value(), other())
+    picked = value() if np.all(test) else other()
+    if np.ndim(picked) >= np.ndim(test):
+        return picked
+    return np.broadcast_to(picked, np.shape(test))
+
+
+def _column(value: Any, zeros: np.ndarray) -> np.ndarray:  # noqa: ANN401
+    """Return what a formula gave as a column over the rows (rows, 1 or cases)."""
+    if np.ndim(value) == zeros.ndim and len(value) == len(zeros) and value.dtype == float:
+        return value  # type: ignore[no-any-return]
+    return value + zeros  # type: ignore[no-any-return]
 
 
 def _picker(names: Sequence[str]) -> Callable[[Mapping[str, Value]], tuple[Value, ...]]:

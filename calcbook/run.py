@@ -1,29 +1,27 @@
 """The one runner: a notebook and its record in, a statement out, no screen.
 
 Notebook code is run as plain Python in this process, in a namespace of its own, always from the
-first cell to the last. A workbook that carries values from another has that one run first.
+first cell to the last; once for all marks of a workbook, because what it declares depends on
+nothing that is typed. A workbook that carries values from another has that one run first.
 """
 
 from __future__ import annotations
 
-import contextlib
 import hashlib
-import json
-import platform
 from contextvars import ContextVar
 from dataclasses import dataclass, field
-from functools import cache
-from importlib import metadata
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from calcbook import codes
 from calcbook.cells import read_cells, run_cell
 from calcbook.errors import CalcbookError, CarryError, InputError, JobError, near_match
+from calcbook.fingerprint import item_digest
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
 from calcbook.job import Job, templates
 from calcbook.marks import gathered
+from calcbook.versions import software
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
@@ -34,8 +32,8 @@ if TYPE_CHECKING:
 
 BASIS = "design-basis"
 ALL_MARKS = "*"
-LIBRARIES = ("calcbook", "numpy", "pint", "sympy", "matplotlib", "typst", "nbconvert", "ipywidgets")
 Plain = dict[str, Any]
+Part = tuple[str, str | list[str]]
 
 
 @dataclass
@@ -67,6 +65,7 @@ class Runner:
         self.progress = progress or (lambda _text: None)
         self.books: dict[tuple[str, str | None], tuple[Workbook, Plain]] = {}
         self._running: list[str] = []
+        self._declared: dict[tuple[Path, str, str], tuple[Workbook, list[Part]]] = {}
 
     # --- one workbook -----------------------------------------------------------------------
 
@@ -111,14 +110,7 @@ class Runner:
 
     def _run(self, opening: Opening, *, strict: bool) -> tuple[Workbook, Plain]:
         filling = opening.filling
-        parts = _run_cells(filling.notebook, opening)
-        book = opening.book
-        if book is None:
-            raise JobError(
-                "the notebook opens no workbook",
-                where=filling.notebook.name,
-                hint="its first code cell calls open_workbook(name, title)",
-            )
+        book, parts = self._declare(opening)
         book.refuse_unknown()
         statement = book.statement()
         if strict:
@@ -131,6 +123,29 @@ class Runner:
         statement["software"] = dict(software())
         self.books[book.name, book.mark] = (book, statement)
         return book, statement
+
+    def _declare(self, opening: Opening) -> tuple[Workbook, list[Part]]:
+        """Return the workbook of a filling with what its notebook declares, prose in between."""
+        filling = opening.filling
+        name = filling.notebook.stem
+        known = None
+        if filling.mark is not None:
+            code, system = self.settings(name, filling)
+            key = (filling.notebook, code.name, system)
+            known = self._declared.get(key)
+        if known is not None:
+            book = known[0].filled(filling.mark, self.inputs(known[0].name, filling))
+            return book, known[1]
+        parts = _run_cells(filling.notebook, opening)
+        if opening.book is None:
+            raise JobError(
+                "the notebook opens no workbook",
+                where=filling.notebook.name,
+                hint="its first code cell calls open_workbook(name, title)",
+            )
+        if filling.mark is not None:
+            self._declared[key] = (opening.book, parts)
+        return opening.book, parts
 
     # --- inputs -----------------------------------------------------------------------------
 
@@ -302,40 +317,6 @@ def find_item(statement: Mapping[str, Any], name: str) -> Plain | None:
     return next((i for i in all_items(statement) if i["name"] == name), None)
 
 
-def item_digest(item: Mapping[str, Any]) -> str:
-    """Return a digest of what is carried: value, unit and sign sense, or rows and columns."""
-    value: Mapping[str, Any] = item.get("value") or {}
-    columns: Sequence[Mapping[str, Any]] = item.get("columns") or ()
-    basis = [
-        value.get("si"),
-        value.get("unit"),
-        item.get("option"),
-        item.get("text"),
-        item.get("sign"),
-        item.get("rows"),
-        [
-            [
-                c["name"],
-                c["unit"],
-                c["si"],
-                c["texts"] if c["si"] == [None] * len(c["texts"]) else 0,
-            ]
-            for c in columns
-        ],
-    ]
-    return hashlib.sha256(json.dumps(basis, sort_keys=True).encode()).hexdigest()[:16]
-
-
-@cache  # looking versions up is slow, and what was loaded does not change
-def software() -> dict[str, str]:
-    """Return the versions of what computed a statement."""
-    found = {"python": platform.python_version()}
-    for library in LIBRARIES:
-        with contextlib.suppress(metadata.PackageNotFoundError):
-            found[library] = metadata.version(library)
-    return found
-
-
 def find_notebook(name: str, job: Job | None) -> Path:
     """Return the notebook of a WORKBOOK argument: a path, the job's copy, else the template.
 
@@ -358,10 +339,10 @@ def find_notebook(name: str, job: Job | None) -> Path:
     )
 
 
-def _run_cells(path: Path, opening: Opening) -> list[tuple[str, str | list[str]]]:
+def _run_cells(path: Path, opening: Opening) -> list[Part]:
     """Run every code cell; returns prose and the titles each cell declared, in order."""
     space: dict[str, object] = {"__name__": "__main__"}
-    parts: list[tuple[str, str | list[str]]] = []
+    parts: list[Part] = []
     for count, (kind, source) in enumerate(read_cells(path), 1):
         if kind == "markdown":
             parts.append(("prose", source))
@@ -373,9 +354,7 @@ def _run_cells(path: Path, opening: Opening) -> list[tuple[str, str | list[str]]
     return parts
 
 
-def _interleave(
-    parts: Sequence[tuple[str, str | list[str]]], sections: Sequence[Plain]
-) -> list[Plain]:
+def _interleave(parts: Sequence[Part], sections: Sequence[Plain]) -> list[Plain]:
     """Return the statement's sections with the notebook's prose between them."""
     by_title = {s["title"]: s for s in sections}
     out: list[Plain] = []

@@ -91,11 +91,27 @@ class ScheduleWriter:
         }
         if isinstance(item, Line):
             plain |= self.lines.stated(item, -1)
+            for case, holds in zip(plain["cases"], self._holding(bound, len(keys)), strict=False):
+                case["holds"] = holds
         if bound.type is not None and bound.type.form == "text":
             words = self.readings.words.get(bound.name, [""] * len(keys))
             labels = dict(item.labels) if isinstance(item, (Choice, Carry)) else {}
             return plain | {"texts": words, "si": [None] * len(keys), "labels": labels}
         return plain | self._numbers(bound, schedule, len(keys))
+
+    def _holding(self, bound: Bound, count: int) -> list[bool]:
+        """Return which cases of a column's line hold in some row; none where it has no values."""
+        open_rows = np.ones(count, dtype=bool)
+        held: list[bool] = []
+        if not isinstance(self.results.values.get(bound.name), np.ndarray):
+            return held
+        for test, _ in self.program.step(bound).branches:
+            here = open_rows.copy()
+            if test is not None:
+                here &= np.asarray(self.program.run(test, self.results.values), dtype=bool)
+            held.append(bool(here.any()))
+            open_rows &= ~here
+        return held
 
     def _problems(self, bound: Bound, count: int) -> list[str] | None:
         """Return why each row has no value, '' where it has, or None where all have theirs."""

@@ -81,6 +81,10 @@ class Rows(Declarations):
         self._schedule.order = column
         self._schedule.ascending = True
 
+    def distinct(self, *columns: str) -> None:
+        """Require that no two rows have the same words in these columns together."""
+        self._schedule.distinct = columns
+
     def __enter__(self) -> Self:
         """Begin the block."""
         return self

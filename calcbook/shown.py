@@ -199,6 +199,8 @@ class Shown:
         size = [abs(v) / unit.factor for v in every if v and math.isfinite(v)]
         kind = getattr(item, "kind", None)
         step = 3
+        if kind is not None and kind.name == "count":
+            return 0
         if kind is not None and unit.text == self.display(name).text:
             step = kind.decimals_us if self.system == "US" else kind.decimals_si
         if not size or max(size) < NOISE * 10.0**-step:

@@ -99,6 +99,8 @@ class Source:
             value = self.branch(bound, place)
             if test is None:
                 text = value
+            elif self.array:
+                text = _picked(self.expression(test), value, text or NAN)
             elif self._decides_once(test):
                 # a branch that does not hold may use names that have no value at all
                 text = f"({value} if {self.expression(test)} else {text or NAN})"
@@ -130,8 +132,10 @@ class Source:
         guard = self._guard(bound.guards) if bound.guards else ""
         name = f"v_{bound.name}"
         if self.array:
-            value = self._column(bound) if bound.schedule is not None else self.selected(bound)
-            text = f"_where({guard}, {value}, {NAN})" if guard else value
+            value = self.selected(bound)
+            text = _picked(guard, value, NAN) if guard else value
+            if bound.schedule is not None:
+                text = f"_column({text}, z_{bound.schedule.rows})"
             self.body.append(f"{name} = {text}")
             return
         if bound.schedule is not None:
@@ -195,6 +199,11 @@ class Source:
             return
         self.body += [f"if {guard}:", *(f"    {t}" for t in lines)]
         self.body += ["else:", *(f"    {t}" for t in idle)]
+
+
+def _picked(test: str, value: str, other: str) -> str:
+    """Return source that selects by cases, and leaves out what no case asks for."""
+    return f"_pick({test}, lambda: {value}, lambda: {other})"
 
 
 def _case(bound: Bound) -> str:

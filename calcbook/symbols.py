@@ -42,11 +42,20 @@ class Sign(NamedTuple):
 
 
 def symbol_parts(name: str) -> tuple[Sign, tuple[Sign, ...]]:
-    """Take a name apart into its base and its subscripts: ``p_wall_lee`` is p, (wall, lee)."""
+    """Take a name apart into its base and its subscripts: ``p_wall_lee`` is p, (wall, lee).
+
+    A name of words alone is words, not a symbol with subscripts: ``carried_by`` is carried by.
+    """
     base, *below = [part for part in name.split("_") if part] or [name]
+    if below and all(_is_word(part) for part in (base, *below)):
+        return Sign("word", " ".join((base, *below))), ()
     if indexed := _INDEXED.fullmatch(base):
         base, below = indexed[1], [indexed[2], *below]
     return _sign(base, frozenset()), tuple(_sign(part, _LETTERS) for part in below)
+
+
+def _is_word(text: str) -> bool:
+    return len(text) > 1 and text.isalpha() and text.islower() and text not in GREEK
 
 
 def _sign(text: str, letters: frozenset[str] | set[str]) -> Sign:

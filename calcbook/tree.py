@@ -159,3 +159,13 @@ def gathered(node: Node) -> tuple[str, ...]:
     """Return the symbols that stand inside such a call, in order of first appearance."""
     inner = (name for part in walk(node) if gathers(part) for name in names(part))
     return tuple(dict.fromkeys(inner))
+
+
+def accumulated(node: Node) -> frozenset[str]:
+    """Return the symbols that are gathered by ``running`` alone: a row needs those before it."""
+    calls = [part for part in walk(node) if gathers(part)]
+    running = {
+        n for c in calls if isinstance(c, Call) and c.function == "running" for n in names(c)
+    }
+    others = (c for c in calls if isinstance(c, Call) and c.function != "running")
+    return frozenset(running - {name for call in others for name in names(call)})

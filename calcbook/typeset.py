@@ -8,7 +8,7 @@ from html import escape
 from typing import TYPE_CHECKING, ClassVar
 
 from calcbook.formula import names, parse
-from calcbook.printer import Printed, Printer
+from calcbook.printer import Printed, Printer, substituted
 from calcbook.symbols import GREEK, Sign, raised
 from calcbook.units import pretty_unit
 
@@ -30,6 +30,8 @@ class _MathML(Printer):
     def sign(self, sign: Sign) -> str:
         if sign.kind == "digits":
             return f"<mn>{sign.text}</mn>"
+        if " " in sign.text:
+            return self.words(sign.text)
         return f"<mi>{GREEK[sign.text][0] if sign.kind == 'greek' else sign.text}</mi>"
 
     def digits(self, text: str) -> str:
@@ -162,7 +164,7 @@ class _Latex(Printer):
 
     def sign(self, sign: Sign) -> str:
         if sign.kind == "word":
-            return rf"\mathrm{{{sign.text}}}"
+            return self.words(sign.text)
         return GREEK[sign.text][1] if sign.kind == "greek" else sign.text
 
     def digits(self, text: str) -> str:
@@ -304,6 +306,9 @@ class _Spoken(_Plain):
     def applied(self, name: str, args: list[str]) -> str:
         return f"{name} of {' and '.join(args)} end"
 
+    def of_row(self, column: str, where: str) -> str:
+        return f"{column} where {where}"
+
 
 _PRINTERS: dict[str, type[Printer]] = {
     "mathml": _MathML,
@@ -370,7 +375,7 @@ def equation(
     node = parse(formula_text)
     used = names(node)
     parts = [symbol(name, output), expression(node, output)]
-    if any(name in values for name in used):
+    if values.keys() & substituted(node):
         takes = frozenset(used) if printed_form else frozenset()
         parts.append(expression(node, output, values, takes=takes))
     if result is not None:
@@ -384,7 +389,7 @@ def spoken(
     """Return a line as one spoken sentence, for readers who hear the page."""
     node = parse(formula_text)
     sentence = f"{name} equals {_Spoken().write(node).text}"
-    if any(used in values for used in names(node)):
+    if values.keys() & substituted(node):
         sentence += f", which is {_Spoken(values).write(node).text}"
     if result is not None:
         sentence += f", which equals {_Spoken().value(result.text, result.unit).text}"

@@ -301,6 +301,7 @@ class Kind:
 # Of kinds that share a dimension the first gives it its name.
 _KINDS = (
     ("number", "", "", 3, 3),
+    ("count", "", "", 0, 0),
     ("percent", "%", "%", 1, 1),
     ("length", "m", "ft", 3, 2),
     ("section length", "mm", "in", 1, 2),

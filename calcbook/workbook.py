@@ -6,6 +6,7 @@ through ``on_show``, what to do when a section is complete.
 
 from __future__ import annotations
 
+import copy
 from typing import TYPE_CHECKING, Any
 
 from calcbook.bind import Binder, Bound, by_name, used_by
@@ -130,6 +131,13 @@ class Workbook:
         for section in self.sections:
             section.left_over = section in known and section not in kept
 
+    def filled(self, mark: str | None, inputs: Inputs) -> Workbook:
+        """Return the same declarations for another filling; neither changes the other."""
+        other = copy.copy(self)
+        other.mark, other.inputs = mark, inputs
+        other.sections = list(self.sections)
+        return other
+
     # --- evaluating -------------------------------------------------------------------------
 
     def evaluate(self) -> None:
@@ -209,7 +217,12 @@ class Workbook:
         here = {i.name for i in self.items() if not i.codes or self.code.name in i.codes}
         every = {i.name for i in self.items()}
         given = (*self.inputs.entries, *self.inputs.rows)
-        return [n for n in given if n in every and n not in here]
+        found = [n for n in given if n in every and n not in here]
+        for schedule in (i for i in self.items() if isinstance(i, Schedule)):
+            cells = {c for row in self.inputs.rows.get(schedule.name, ()) for c in row.cells}
+            others = (c for c in schedule.columns if c.codes and self.code.name not in c.codes)
+            found += [f"{schedule.name}, {c.name}" for c in others if c.name in cells]
+        return found
 
     def refuse_unknown(self) -> None:
         """Raise InputError for the first input given that no item of the workbook takes."""

@@ -257,9 +257,13 @@ SOURCE = {
 
 
 def test_rows_are_brought_forward_and_joined_by_key() -> None:
-    """The source gives keys and carried columns; what is typed here is joined by key."""
+    """The source gives keys and carried columns; what is typed here is joined by key.
+
+    Until rows are typed the template's serve where their key is there, and nobody confirmed them.
+    """
     item, columns = _rows(SOURCE)
-    assert (item["rows"], columns["load"]["si"]) == (["Roof", "Low"], [2000.0, 2000.0])
+    assert (item["rows"], columns["load"]["si"]) == (["Roof", "Low"], [1000.0, 2000.0])
+    assert item["confirmed"] == ["", ""]
     typed = [GivenRow("Low", {"load": "5 kPa"}), GivenRow("Roof", {"load": "3 kPa"})]
     item, columns = _rows(SOURCE, typed)
     assert (item["rows"], columns["load"]["si"]) == (["Roof", "Low"], [3000.0, 5000.0])

@@ -32,7 +32,13 @@ BASIS = [
     {"roof": "gable", "ridge": "X", "pitch": "17.5 deg", "o_x": "137 mm"},
     {"roof": "gable", "ridge": "Y", "pitch": "31 deg", "units": "US", "o_y": "5'-6 1/2\""},
 ]
+TAKE_OFF = [
+    {},
+    {"code_set": "ASCE 7-16", "units": "US"},
+    {"roof": "gable", "ridge": "Y", "theta": "31 deg", "r_r": "5.588 m", "z_b": "3.7 m"},
+]
 SETTINGS = [("wind-pressure", s) for s in WIND] + [("design-basis", s) for s in BASIS]
+SETTINGS += [("dead-load-take-off", s) for s in TAKE_OFF]
 
 
 @functools.cache

@@ -54,6 +54,8 @@ def test_the_schema_is_a_schema_and_says_what_everything_is() -> None:
     [
         ("design-basis", {}),
         ("design-basis", {"units": "US", "roof": "gable"}),
+        ("dead-load-take-off", {}),
+        ("dead-load-take-off", {"code_set": "ASCE 7-16", "units": "US", "z_b": "3 kN"}),
         ("wind-pressure", {}),
         ("wind-pressure", {"code_set": "ASCE 7-16", "units": "US", "V": "1,5 mph"}),
         ("wind-pressure", {"roof": "gable", "theta": "20 deg", "hill": "ridge", "h": "9 kN"}),

@@ -51,6 +51,20 @@ SYMBOLS = [
     ("Delta_x", "<msub><mi>Δ</mi><mi>x</mi></msub>", "Δ_(x)", r"\Delta_{x}", "Δ_x"),
     ("width", "<mi>width</mi>", '"width"', r"\mathrm{width}", "width"),
     ("lamda_", "<mi>λ</mi>", "λ", r"\lambda", "λ"),
+    (
+        "carried_by",
+        "<mtext>carried&#xA0;by</mtext>",
+        '"carried by"',
+        r"\mathrm{carried~by}",
+        "carried by",
+    ),
+    (
+        "grid_x",
+        "<msub><mi>grid</mi><mi>x</mi></msub>",
+        '"grid"_(x)',
+        r"\mathrm{grid}_{x}",
+        "grid_x",
+    ),
 ]
 
 

@@ -26,7 +26,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
     from pathlib import Path
 
-FIRST = (BASIS, "wind-pressure")
+FIRST = (BASIS, "dead-load-take-off", "wind-pressure")
 ISSUE_DATE = "issue_date"
 _PAGE = re.compile(rb"/Type\s*/Page\b")
 _UNFIT = re.compile(r"[^\w.-]+")

@@ -12,7 +12,15 @@ import re
 from typing import TYPE_CHECKING
 
 from calcbook.errors import DeclarationError, near_match
-from calcbook.figures import grid_plan, level_ladder, pressure_height, wind_elevation
+from calcbook.figures import (
+    build_up_section,
+    column_ladder,
+    grid_plan,
+    key_plan,
+    level_ladder,
+    pressure_height,
+    wind_elevation,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -24,7 +32,10 @@ if TYPE_CHECKING:
 __all__ = ["describe", "draw", "names", "roles"]
 
 _FAMILIES: dict[str, ModuleType] = {
+    "build-up-section": build_up_section,
+    "column-ladder": column_ladder,
     "grid-plan": grid_plan,
+    "key-plan": key_plan,
     "level-ladder": level_ladder,
     "pressure-height": pressure_height,
     "wind-elevation": wind_elevation,

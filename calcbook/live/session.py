@@ -5,11 +5,19 @@ from __future__ import annotations
 import base64
 import copy
 import datetime as dt
+import os
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-from calcbook.errors import CalcbookError, InputError, RecordChangedError, RecordError
+from calcbook.errors import (
+    CalcbookError,
+    InputError,
+    JobError,
+    RecordChangedError,
+    RecordError,
+    near_match,
+)
 from calcbook.job import Job
 from calcbook.live import notebook, output
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
@@ -31,6 +39,7 @@ MERGED = "The record was changed elsewhere meanwhile; it has been read again."
 UNSIGNED = "type the job number and 'prepared by' in the design basis"
 SHOWN_NOW = "what the record says now is shown; type again to change it"
 WAIT_SECONDS = 2.0
+MARK = "CALCBOOK_MARK"
 
 
 @dataclass(frozen=True)
@@ -73,10 +82,12 @@ class Session:
         job: Job | None = None, record: Record | None = None,
     ) -> None:  # fmt: skip
         self.job = job
+        self.marks = job.marks(name) if job is not None else ()
+        self.mark = _opened_mark(name, self.marks)
         if job is not None:
-            record = job.record(name)
+            record = job.record(name, self.mark)
         self.record = record or Record(Path(f"{name}.toml"), name)
-        self.filling = Filling(notebook.path(name), record=self.record)
+        self.filling = Filling(notebook.path(name), self.mark, record=self.record)
         self.runner = Runner(job)
         self.book = open_book(self.runner, self.filling, name, title, signs)
         self.book.on_show = self.show
@@ -94,9 +105,11 @@ class Session:
         """Show a section that was declared: a view where widgets are, and its stable output."""
         self._evaluate()
         plain = self.section(section.title)
+        first = self.mark is not None and section is self.book.sections[0]
+        lead = f"Mark {self.mark}\n\n" if first else ""
         bundle: dict[str, Any] = {
-            "text/markdown": output.markdown(self.statement, plain),
-            "text/plain": output.plain(self.statement, plain),
+            "text/markdown": lead + output.markdown(self.statement, plain),
+            "text/plain": lead + output.plain(self.statement, plain),
         }
         picture = output.picture(self.statement, plain)
         if picture is not None:
@@ -119,6 +132,16 @@ class Session:
         self.views[title] = view
         self.refresh(evaluate=False)
         return view
+
+    def mark_words(self) -> str:
+        """Return which mark is open and how another one is opened; '' without marks."""
+        if self.mark is None:
+            return ""
+        others = [mark for mark in self.marks if mark != self.mark]
+        if not others:
+            return f"Mark {self.mark}, the only one."
+        told = f"Mark {self.mark}, one of {len(self.marks)}: {self.marks[0]} to {self.marks[-1]}."
+        return f"{told} For another one, set {MARK} to it and run all cells again."
 
     def section(self, title: str, missing: Plain | None = None) -> Plain:
         """Return a section of the last statement."""
@@ -342,6 +365,20 @@ class Session:
         typed = self._typed.setdefault((schedule, key), set())
         typed.add(column)
         return set(entered_columns(self.book.schedule_item(schedule))) <= typed
+
+
+def _opened_mark(name: str, marks: tuple[str, ...]) -> str | None:
+    """Return the mark to open: the one the environment names, else the first; None without marks.
+
+    Raises JobError when the environment names one that has no record.
+    """
+    if not marks:
+        return None
+    named = os.environ.get(MARK)
+    if named and named not in marks:
+        hint = near_match(named, marks) or f"it has {', '.join(marks)}"
+        raise JobError(f"{name} has no mark '{named}', which {MARK} asks for", hint=hint)
+    return named or marks[0]
 
 
 def _new_keys() -> Any:  # noqa: ANN401

@@ -144,6 +144,7 @@ class SectionView:
         if not section["applies"]:
             told.append(f"This section is {not_applied(section)}.")
         if self.first:
+            told.append(self.session.mark_words())
             told.append(NO_JOB if self.session.job is None else self._unsigned())
         told.append(self.session.notice)
         return "".join(f'<div class="cb-quiet">{page.lines(text)}</div>' for text in told if text)

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
+from calcbook.pack.repeats import Repeats
+
 if TYPE_CHECKING:
     from collections.abc import Iterator, Sequence
 
@@ -39,15 +41,25 @@ class Anchors:
         self._known: set[str] = set()
         self._books: dict[tuple[str, str | None], int] = {}
         self._names: dict[tuple[int, str], str] = {}
+        repeats = Repeats(statements)
         for index, statement in enumerate(statements):
             self._books.setdefault((statement["workbook"], statement.get("mark")), index)
-            for item in items(statement):
-                row = item.get("governing") or {}
-                for printed in (item, *row.get("lines", ())):
-                    self._known.add(f"{index}-{printed['number']}")
-                if item.get("name"):
-                    self._names.setdefault((index, item["name"]), item["number"])
+            for section in sections(statement):
+                if not repeats.section_stands(index, section):
+                    self._add(index, section, repeats)
         self._given: set[str] = set()
+
+    def _add(self, index: int, section: dict[str, Any], repeats: Repeats) -> None:
+        """Note what a section prints."""
+        for item in section["items"]:
+            said = item["kind"] == "remark" and not repeats.remark_is_new(index, item)
+            if said or not item.get("applies", True):
+                continue
+            row = item.get("governing") or {}
+            for printed in (item, *row.get("lines", ())):
+                self._known.add(f"{index}-{printed['number']}")
+            if item.get("name"):
+                self._names.setdefault((index, item["name"]), item["number"])
 
     def give(self, index: int, number: str) -> str | None:
         """Return the label to put on an item; only the first item of a number gets it."""

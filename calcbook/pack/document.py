@@ -10,6 +10,7 @@ from calcbook.pack import front, prose
 from calcbook.pack.anchors import Anchors, items, printed_name
 from calcbook.pack.items import Writer, governing
 from calcbook.pack.nodes import Node, joined, numbers, phrase, words
+from calcbook.pack.repeats import Repeats
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -19,6 +20,7 @@ if TYPE_CHECKING:
 
 LONGEST_JOB, LONGEST_NUMBER, LONGEST_BOOK, LONGEST_INITIALS, LONGEST_ISSUE = 44, 20, 44, 12, 34
 LISTED_TONES = ("assumption", "not covered")
+SAID_ONCE = "Method, limits, remarks and what columns are: where they hold for all marks, in "
 
 
 def document(
@@ -41,8 +43,9 @@ def document(
     anchors = Anchors(statements)
     numbers = _remark_numbers(statements)
     files: dict[str, bytes] = {}
+    repeats = Repeats(statements)
     books = [
-        _book(Writer(index, statement, anchors, figures, numbers, files))
+        _book(Writer(index, statement, anchors, figures, numbers, files, repeats))
         for index, statement in enumerate(statements)
     ]
     attachments = _attach(statements, files)
@@ -92,12 +95,17 @@ def _attach(statements: list[Statement], files: dict[str, bytes]) -> list[dict[s
 
 
 def _remark_numbers(statements: list[Statement]) -> dict[int, int]:
-    """Return the number of every assumption and everything not covered, by the item's id."""
+    """Return the number of every assumption and everything not covered, by the item's id.
+
+    What several marks of a workbook say alike is listed once.
+    """
+    repeats = Repeats(statements)
     listed = [
         id(item)
-        for statement in statements
+        for index, statement in enumerate(statements)
         for item in items(statement)
         if item["kind"] == "remark" and item["tone"] in LISTED_TONES
+        if repeats.remark_is_new(index, item)
     ]
     return {item: number for number, item in enumerate(listed, start=1)}
 
@@ -128,11 +136,17 @@ def _book(writer: Writer) -> dict[str, Any]:
 
 def _written(index: int, statement: Statement, writer: Writer) -> dict[str, Any]:
     title = printed_name(statement)
+    later = writer.repeats.later(index)
     purpose = prose.read(statement.get("purpose") or "", title=statement["title"])
     level = prose.last_level(purpose, 1)
     parts: list[Node] = []
+    if later:
+        purpose = []
+        parts.append({"t": "skipped", "c": writer.repeats.reference(index, SAID_ONCE)})
     for number, part in enumerate(statement["parts"]):
         if part["kind"] == "prose":
+            if later:
+                continue
             text = prose.read(part["markdown"], below=level, title=statement["title"])
             level = prose.last_level(text, level)
             if text:
@@ -165,11 +179,16 @@ def _section(part: dict[str, Any], label: str, writer: Writer) -> list[Node]:
     name = f"{part['number']} {words(part['title'])}"
     if not part.get("applies", True):
         return [{"t": "skipped", "c": [f"{name}: ", *phrase(not_applied(part))]}]
-    blocks: list[Node] = [{"t": "heading", "s": name, "label": label}]
+    if writer.repeats.section_stands(writer.index, part):
+        return [{"t": "skipped", "c": writer.repeats.reference(writer.index, f"{name}: as in ")}]
+    listed = not writer.repeats.later(writer.index)
+    blocks: list[Node] = [{"t": "heading", "s": name, "label": label, "listed": listed}]
     skipped: dict[str, list[str]] = {}
     for item in part["items"]:
         if not item.get("applies", True):
             skipped.setdefault(not_applied(item), []).append(item["number"])
+            continue
+        if item["kind"] == "remark" and not writer.repeats.remark_is_new(writer.index, item):
             continue
         blocks += _skipped(skipped)
         skipped = {}

@@ -64,7 +64,7 @@ def cover_page(cover: Cover, statements: list[Statement]) -> dict[str, Any]:
         ("issue", [words(cover.issue)]),
         ("codes", [words("; ".join(e for e in editions if e)) or "none named"]),
         ("units", [" and ".join(systems)]),
-        ("workbooks", [words("; ".join(printed_name(s) for s in statements))]),
+        ("workbooks", [words("; ".join(_titles(statements)))]),
     ]
     same = None
     if cover.same_person:
@@ -81,6 +81,18 @@ def cover_page(cover: Cover, statements: list[Statement]) -> dict[str, Any]:
         "caution": [[strong("Caution. "), CAUTION], [BOUNDS]],
         "counts": _counts(statements),
     }
+
+
+def _titles(statements: list[Statement]) -> list[str]:
+    """Return the titles of the workbooks, each with its marks where it has some."""
+    marks: dict[str, list[str]] = {}
+    for statement in statements:
+        own = [str(statement["mark"])] if statement.get("mark") else []
+        marks.setdefault(str(statement["title"]), []).extend(own)
+    return [
+        f"{title}, {len(own)} marks" if len(own) > 1 else ", ".join([title, *own])
+        for title, own in marks.items()
+    ]
 
 
 def _counts(statements: list[Statement]) -> list[tuple[str, list[Node]]]:

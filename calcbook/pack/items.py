@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from collections.abc import Callable
 
     from calcbook.pack.anchors import Anchors, Item, Statement
+    from calcbook.pack.repeats import Repeats
 
 FROM_MEMORY = "from memory: confirm against the code"
 LONG_TEXT = 500
@@ -35,6 +36,8 @@ class Writer:
         Draws a figure item as SVG; what is drawn is put among ``files``.
     remarks
         Number of each listed remark, by the id of its item.
+    repeats
+        What was said with an earlier mark of the same workbook.
     """
 
     index: int
@@ -43,6 +46,7 @@ class Writer:
     figures: Callable[[Statement, Item], bytes]
     remarks: dict[int, int]
     files: dict[str, bytes]
+    repeats: Repeats
 
     def block(self, item: Item) -> Node:
         """Return an item as a block of page.typ."""
@@ -188,13 +192,23 @@ class Writer:
             notes.insert(0, origin_words(self.anchors, item))
         if item.get("stale"):
             lines.append([strong("Stale: "), "the rows have moved on since they were taken"])
+        if self._stands_elsewhere(item):
+            told = f"{len(item['rows'])} rows"
+            return {"t": "entry", "value": [told], "lines": lines, "notes": notes}
         return {
             "t": "schedule",
-            "lines": [*lines, *schedules.legend(item)],
+            "lines": [*lines, *self.repeats.new(self.index, schedules.legend(item))],
             "table": schedules.table(item),
             "after": schedules.remarks(item),
             "notes": notes,
         }
+
+    def _stands_elsewhere(self, item: Item) -> bool:
+        """Whether a schedule only brings forward what is printed at its source."""
+        plain = all(column["role"] == "carried" for column in item["columns"])
+        trouble = item.get("errors") or any(column["problem"] for column in item["columns"])
+        printed = item.get("from") and self.anchors.origin(item["from"])[0]
+        return bool(printed and plain and not trouble and not item["problem"])
 
 
 def governing(item: Item) -> list[Item]:

@@ -6,11 +6,12 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CarryError
 from calcbook.figures import draw
+from calcbook.fingerprint import item_digest
 from calcbook.job import Job
 from calcbook.pack.compile import make_pack
 from calcbook.pack.cover import Cover
 from calcbook.record import CarriedRecord, update
-from calcbook.run import BASIS, Filling, Runner, all_items, carries, item_digest
+from calcbook.run import BASIS, Filling, Runner, all_items, carries
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping

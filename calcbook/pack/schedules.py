@@ -18,6 +18,7 @@ NUMBER = re.compile(r"([+-]?\d+(?:\.(\d*))?(?:[eE][+-]?\d+)?)(?:\s+(\D.*))?")
 WORDY = ("text", "choice")
 NAMED_ROWS = 6
 PROBES = 3
+LONGEST_CONDITION = 90  # of a case by the clause; a longer one is read there
 Cell = dict[str, Any]
 Column = dict[str, Any]
 
@@ -64,7 +65,7 @@ def legend(item: Item) -> list[list[Node]]:
             lines.append([symbol(column["name"]), " ", *meaning, ": not applied"])
         elif column["role"] == "computed" and column["name"] not in worked:
             lines += _definitions(column, [*meaning, clause])
-        elif column["role"] not in WORDY:
+        elif column["role"] not in WORDY and "labels" not in column:  # words are headed by words
             role = {"entered": ", entered", "carried": ", brought forward"}.get(column["role"], "")
             role = "" if item.get("fixed") else role
             told.append([symbol(column["name"]), " ", *meaning, f"{role}{clause}"])
@@ -75,13 +76,14 @@ def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:
     """Return a computed column's formula and meaning, or its meaning and the formula by case."""
     if not column.get("cases"):
         return [[_definition(column["name"], column["formula"]), ", ", *meaning]]
+    holding = [case for case in column["cases"] if case.get("holds")] or column["cases"]
     lines: list[list[Node]] = [[symbol(column["name"]), " ", *meaning, ", by case:"]]
-    for case in column["cases"]:
+    for case in holding:
         line: list[Node] = [_definition(column["name"], case["formula"])]
-        if case.get("when"):
-            condition = formula.parse(case["when"])
-            when = (typeset.expression(condition, output) for output in ("typst", "plain"))
-            line += [" where ", nodes.math(*when)]
+        condition = formula.parse(case["when"])
+        code, plain = (typeset.expression(condition, output) for output in ("typst", "plain"))
+        if len(plain) <= LONGEST_CONDITION or not column.get("clause"):
+            line += [" where ", nodes.math(code, plain)]
         lines.append(line)
     return lines
 
@@ -159,15 +161,15 @@ def _column(item: Item, column: Column) -> Column:
     unit = column.get("unit") or ""
     entered = column["role"] in ("entered", *WORDY) and not item.get("fixed")
     problems = column.get("problem") or [None] * len(item["rows"])
+    wordy = column["role"] in WORDY or "labels" in column
     cells = [
-        _cell(text or ("" if p is None else "n/a"), unit) for text, p in _pairs(column, problems)
+        _cell(text or ("" if p is None else "n/a"), unit, wordy=wordy)
+        for text, p in _pairs(column, problems)
     ]
     for cell in cells:
         cell["typed"] = entered
     total = column.get("total")
-    number = column["role"] not in WORDY and all(
-        c["digits"] is not None or c["void"] for c in cells
-    )
+    number = not wordy and all(c["digits"] is not None or c["void"] for c in cells)
     if number:
         head: list[list[Node]] = [[symbol(column["name"])], [units.pretty_unit(unit)]]
     else:
@@ -180,9 +182,9 @@ def _pairs(column: Column, problems: Sequence[str | None]) -> list[tuple[str | N
     return list(zip(column["texts"], problems, strict=True))
 
 
-def _cell(text: str, unit: str) -> Cell:
+def _cell(text: str, unit: str, *, wordy: bool = False) -> Cell:
     """Return a cell; digits = how many follow the decimal point, None when it is no number."""
-    found = NUMBER.fullmatch(text.strip())
+    found = None if wordy else NUMBER.fullmatch(text.strip())
     if not found:
         return {"c": [words(text)], "digits": None, "void": text in ("", "n/a")}
     own = found[3] if found[3] and units.pretty_unit(found[3]) != units.pretty_unit(unit) else ""

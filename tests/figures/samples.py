@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 from typing import Any
 
 FEET = 0.3048
@@ -180,6 +181,124 @@ GABLE = figure(
     roof_leeward="p_rl",
 )
 HEIGHT = figure("pressure-height", levels="levels", z="z", q="q", p="p", h="h")
+
+
+def word_column(name: str, texts: list[str]) -> dict[str, Any]:
+    """Return a column of words."""
+    return {"name": name, "unit": "", "texts": texts, "si": [None] * len(texts), "problem": None}
+
+
+FLOOR_AND_WALL = [
+    ("F1", "tile on mortar", "23", "0.77", "superimposed", "no"),
+    ("F1", "slab", "200", "4.72", "self", "yes"),
+    ("F1", "ducts", "0", "0.19", "superimposed", "no"),
+    ("F1", "partitions", "0", "1.00", "partitions", "no"),
+    ("E1", "plaster", "16", "0.29", "superimposed", "no"),
+    ("E1", "block", "150", "3.83", "self", "yes"),
+]
+
+
+def build_ups(
+    layers: list[tuple[str, str, str, str, str, str]] | None = None,
+    kinds: tuple[tuple[str, str, str, str], ...] = (
+        ("F1", "floor", "level", "6.68"),
+        ("E1", "outside wall", "upright", "4.12"),
+    ),
+    share: float = 1.0,
+) -> dict[str, Any]:
+    """Return a take-off: build-ups (key, words, surface, load) and their layers."""
+    rows = FLOOR_AND_WALL if layers is None else layers
+    of, what, thick, heavy, part, certain = (list(found) for found in zip(*rows, strict=True))
+    keys, titles, surfaces, loads = (list(found) for found in zip(*kinds, strict=True))
+    return statement(
+        schedule(
+            "types", keys, word_column("title", titles), word_column("surface", surfaces)
+        ),
+        schedule(
+            "layers", [f"{home}.{n}" for n, home in enumerate(of, 1)],
+            word_column("of", of), word_column("what", what), column("t", "mm", thick, 1e-3),
+            column("g", "kPa", heavy, 1e3), word_column("part", part),
+            word_column("certain", certain),
+        ),
+        schedule(
+            "loads", keys, column("D", "kPa", loads, 1e3), column("D_min", "kPa", loads, 1e3)
+        ),
+        line("f", f"{share:g}", "", share),
+    )  # fmt: skip
+
+
+SECTION = figure(
+    "build-up-section", build_ups="types", title="title", surface="surface", load="D",
+    least="D_min", layers="layers", layer_of="of", layer="what", thickness="t", weight="g",
+    part="part", certain="certain", partitions="f",
+)  # fmt: skip
+
+
+def column_stack(
+    keys: list[str] | None = None, step: float = 3.5, scale: float = 1.0
+) -> dict[str, Any]:
+    """Return a column with levels from the roof down: what each adds, and the running totals."""
+    keys = keys or ["Roof", "Level 3", "Level 2", "Ground"]
+    count = len(keys)
+    heights = [f"{step * (count - 1 - n):.2f}" for n in range(count)]
+    dead = [f"{scale * (100 if n < count - 1 else 0):.1f}" for n in range(count)]
+    live = [f"{scale * (40 if 0 < n < count - 1 else 0):.1f}" for n in range(count)]
+    totals = [
+        [f"{sum(float(v) for v in values[: n + 1]):.1f}" for n in range(count)]
+        for values in (dead, live)
+    ]
+    return statement(
+        schedule("levels", keys, column("z", "m", heights)),
+        schedule("adds", keys, column("G", "kN", dead, 1e3), column("Q", "kN", live, 1e3)),
+        schedule(
+            "below", keys, column("P_D", "kN", totals[0], 1e3), column("P_L", "kN", totals[1], 1e3)
+        ),
+    )
+
+
+STACK = figure(
+    "column-ladder", levels="levels", elevation="z", added=["G", "Q"], total=["P_D", "P_L"]
+)
+
+
+def key_plan(
+    marks: list[tuple[str, str, str, str, str]] | None = None,
+    xs: tuple[float, ...] = (0, 6, 12, 18),
+    ys: tuple[float, ...] = (0, 5, 10),
+) -> dict[str, Any]:
+    """Return a grid with what each line takes, and marks: key, lines, alike at, area."""
+    rows = marks or [
+        ("C-1", "1", "A", "4-A, 1-C, 4-C", "12.00"),
+        ("C-2", "2", "A", "3-A, 2-C 3-C", "18.00"),
+        ("C-3", "1", "B", "B-4", "20.00"),
+        ("C-4", "2", "B", "3-B", "30.00"),
+    ]
+    names, at_x, at_y, alike, areas = (list(found) for found in zip(*rows, strict=True))
+    return statement(
+        _strips("grid_x", [str(n + 1) for n in range(len(xs))], "x", xs, 1.0),
+        _strips("grid_y", [chr(65 + n % 26) for n in range(len(ys))], "y", ys, 0.5),
+        schedule(
+            "marks", names, word_column("at_x", at_x), word_column("at_y", at_y),
+            word_column("alike", alike), column("A", "m2", areas),
+        ),
+    )  # fmt: skip
+
+
+def _strips(
+    name: str, keys: list[str], way: str, places: tuple[float, ...], over: float
+) -> dict[str, Any]:
+    ends = (places[0] - 2 * over, *places, places[-1] + 2 * over)
+    middles = [(one + other) / 2 for one, other in pairwise(ends)]
+    low, high = middles[:-1], middles[1:]
+    texts = [[f"{v:g}" for v in values] for values in (places, low, high)]
+    columns = (way, f"{way}_a", f"{way}_b")
+    return schedule(name, keys, *map(column, columns, ["m"] * 3, texts))
+
+
+KEY_PLAN = figure(
+    "key-plan", grid_x="grid_x", x="x", x_from="x_a", x_to="x_b", grid_y="grid_y", y="y",
+    y_from="y_a", y_to="y_b", marks="marks", at_x="at_x", at_y="at_y", alike="alike", area="A",
+)  # fmt: skip
 
 
 def _turned(text: str) -> str:

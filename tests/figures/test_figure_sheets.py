@@ -16,12 +16,18 @@ from samples import (
     FLAT,
     GABLE,
     HEIGHT,
+    KEY_PLAN,
     LADDER,
     PLAN,
+    SECTION,
+    STACK,
+    build_ups,
     changed,
+    column_stack,
     flipped,
     gable,
     grid,
+    key_plan,
     levels,
     statement,
     value,
@@ -62,7 +68,48 @@ def crowded() -> dict[str, Any]:
     return levels(keys, ["-6.50", "0.00", "0.35", "4.60", "4.75"])
 
 
+def many_build_ups(count: int, layers: int) -> dict[str, Any]:
+    """Return build-ups of many layers with long words, every second one a wall."""
+    words = "polymer-modified bituminous membrane, two layers, laid hot"
+    rows = [
+        (f"T{n}", words, "35", "1234.567", "self", "yes") for n in range(count)
+        for _ in range(layers)
+    ]  # fmt: skip
+    kinds = tuple(
+        (f"T{n}", f"{words} on {words}", "upright" if n % 2 else "pitched", "1234.567")
+        for n in range(count)
+    )
+    return build_ups(rows, kinds)
+
+
+def thick_raft() -> dict[str, Any]:
+    """Return a build-up of a metre beside one of a millimetre."""
+    rows = [("A", "raft", "1000", "23.6", "self", "yes"), ("B", "sheet", "1", "0.08", "self", "no")]
+    return build_ups(rows, (("A", "raft", "level", "23.6"), ("B", "wall", "upright", "0.08")))
+
+
+def crowded_columns() -> dict[str, Any]:
+    """Return a mark at every crossing of a close grid, with long marks."""
+    xs, ys = tuple(1.5 * n for n in range(30)), tuple(4.0 * n for n in range(12))
+    marks = [
+        (f"Column {n}", str(1 + n % 30), chr(65 + n // 30), "", "6.00") for n in range(30 * 12)
+    ]
+    return key_plan(marks, xs, ys)
+
+
 SHEETS = {
+    "column": (column_stack(), STACK),
+    "column of one": (column_stack(["Roof"]), STACK),
+    "column high": (column_stack([f"L{n}" for n in range(90, 0, -1)]), STACK),
+    "column, long words": (column_stack(["Level of the plant rooms, upper", "B"], 0.4, 1e6), STACK),
+    "key plan": (key_plan(), KEY_PLAN),
+    "key plan, crowded": (crowded_columns(), KEY_PLAN),
+    "key plan of one": (key_plan([("C-1", "1", "A", "", "4.00")], (0.0,), (0.0,)), KEY_PLAN),
+    "build-ups": (build_ups(), SECTION),
+    "build-ups, many": (many_build_ups(14, 3), SECTION),
+    "build-ups of many layers": (many_build_ups(2, 60), SECTION),
+    "build-up alone": (many_build_ups(1, 1), SECTION),
+    "build-ups, thick and thin": (thick_raft(), SECTION),
     "ladder": (CLINIC, LADDER),
     "ladder of one": (levels(["Roof"], ["4.20"]), LADDER),
     "ladder of ground": (levels(["Ground"], ["0"]), LADDER),

@@ -9,7 +9,18 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from calcbook.algebra import evaluate
-from calcbook.tree import Binary, Call, Compare, Logic, Name, Negative, Not, names
+from calcbook.tree import (
+    KEYED,
+    Binary,
+    Call,
+    Compare,
+    Logic,
+    Name,
+    Negative,
+    Not,
+    Quoted,
+    names,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -77,8 +88,25 @@ class Oracle:
                 node = replace(node, first=flat(node.first), rest=rest)
         return node
 
+    def _keyed(self, node: Call, row: int) -> float:
+        """Return the value of the first row that has a key, or the sum of all that have it."""
+        column, keys, key = node.args
+        assert isinstance(keys, Name)
+        wanted = key.text if isinstance(key, Quoted) else self._word(key, row)
+        own = [r for r, text in enumerate(self.values[keys.name]) if text == wanted]
+        if node.function == "lookup":
+            return float(self.at(column, own[0]))
+        return math.fsum(float(self.at(column, r)) for r in own)
+
+    def _word(self, key: Node, row: int) -> str:
+        assert isinstance(key, Name)
+        value = self.values[key.name]
+        return str(value[row] if isinstance(value, list) else value)
+
     def _gathered(self, node: Call, row: int) -> float | bool | None:
         first = node.args[0]
+        if node.function in KEYED:
+            return self._keyed(node, row)
         if node.function in GATHERS and len(node.args) == 1:
             every = [float(self.at(first, r)) for r in self.rows(first)]
             return math.fsum(every) if node.function == "sum" else _extreme(node.function, every)
