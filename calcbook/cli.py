@@ -75,6 +75,8 @@ COMMANDS = {
         _WORKBOOK,
         ("values", {"metavar": "NAME=VALUE", "nargs": "*", "help": "an entry: V='70 m/s'"}),
         _ROWS,
+        ("--source", {"metavar": "TEXT",
+                      "help": "where every value and row that is set comes from"}),
         ("--confirm", {"metavar": "INITIALS",
                        "help": "confirm what is set; with nothing set, the whole workbook"}),
     )),

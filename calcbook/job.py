@@ -19,12 +19,12 @@ from calcbook.tomltext import TomlText
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-__all__ = ["Job", "template_folder", "templates"]
+__all__ = ["BASIS", "JOB_NUMBER", "Job", "template_folder", "templates"]
 
 FORMAT = 1
 _FILE = "job.toml"
 _ENVIRONMENT = "CALCBOOK_JOB"
-_BASIS, _NUMBER = "design-basis", "job_number"
+BASIS, JOB_NUMBER = "design-basis", "job_number"  # where the job's own data are entered
 _LIST_HINT = 'list the notebooks in order: workbooks = ["design-basis", "wind-pressure"]'
 _START_HINT = "start a job with: calcbook start FOLDER"
 
@@ -149,10 +149,23 @@ class Job:
             self.record_path(workbook, mark)
         return tuple(sorted(found, key=_natural))
 
+    def fillings(self) -> list[tuple[str, str | None]]:
+        """Return every workbook with each of its marks, in the order of the pack.
+
+        A workbook with marks has a filling without one only where that has a record.
+        """
+        found: list[tuple[str, str | None]] = []
+        for workbook in self.workbooks:
+            marks = self.marks(workbook)
+            if not marks or self.record_path(workbook).exists():
+                found.append((workbook, None))
+            found += [(workbook, mark) for mark in marks]
+        return found
+
     @property
     def number(self) -> str:
         """The job number: an entry of the design basis; '' when it has none."""
-        entry = self.record(_BASIS).entries.get(_NUMBER)
+        entry = self.record(BASIS).entries.get(JOB_NUMBER)
         return entry.value if entry else ""
 
     def claim(self, workbook: str, notebook: Path) -> None:

@@ -22,7 +22,7 @@ from calcbook.cells import read_cells, run_cell
 from calcbook.errors import CalcbookError, CarryError, InputError, JobError, near_match
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
-from calcbook.job import Job, templates
+from calcbook.job import BASIS, Job, templates
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
@@ -31,7 +31,6 @@ if TYPE_CHECKING:
     from calcbook.codes import CodeSet
     from calcbook.record import CarriedRecord, EntryRecord, Record, RowRecord
 
-BASIS = "design-basis"
 LIBRARIES = ("calcbook", "numpy", "pint", "sympy", "matplotlib", "typst", "nbconvert", "ipywidgets")
 Plain = dict[str, Any]
 

@@ -33,6 +33,7 @@ from calcbook.reading import range_text
 from calcbook.reasons import Reasons
 from calcbook.scheduleitem import ScheduleWriter
 from calcbook.shown import Printed, Shown, exact_text, plain_value, twelve
+from calcbook.standing import is_input, is_unconfirmed, unconfirmed_rows
 from calcbook.tree import Compare, Quoted, walk
 from calcbook.verdict import ratio, ratio_text, side_texts
 
@@ -302,18 +303,16 @@ def counts(sections: Sequence[Plain]) -> dict[str, int]:
     items: list[Plain] = [i for s in sections for i in s["items"] if i["applies"]]
     schedules = [i for i in items if i["kind"] == "schedule"]
     columns = [c for i in schedules for c in i["columns"] if c["applies"]]
-    given = {"entry", "choice", "text"}
-    inputs = [i for i in items if i["kind"] in given or (i.get("fallback") and "from" in i)]
-    inputs = [i for i in inputs if i["kind"] != "schedule"]
-    rows = [c for i in schedules if not i["fixed"] for c in i["confirmed"]]
+    rows = sum(len(i["rows"]) for i in schedules if not i["fixed"])
+    waiting = sum(map(is_unconfirmed, items)) + sum(len(unconfirmed_rows(i)) for i in items)
     checks = [i for i in items if i["kind"] == "check"]
     faulty = [
         c for i in schedules if not i["problem"] for c in i["columns"] if any(c["problem"] or ())
     ]
     problems = sum(bool(i["problem"]) or i["kind"] == "error" for i in items)
     return {
-        "entries": len(inputs) + len(rows),
-        "unconfirmed": sum(not i["confirmed"] for i in inputs) + sum(not c for c in rows),
+        "entries": sum(map(is_input, items)) + rows,
+        "unconfirmed": waiting,
         "checks": len(checks),
         "not_satisfied": sum(i["satisfied"] is False for i in checks),
         "undecided": sum(i["satisfied"] is None for i in checks),

@@ -325,6 +325,7 @@ _KINDS = (
     ("unit weight", "kN/m3", "pcf", 2, 1),
     ("subgrade modulus", "kN/m3", "pci", 0, 1),
     ("moment", "kN*m", "kip*ft", 1, 1),
+    ("overturning moment", "kN*m", "kip*ft", 0, 0),
     ("stiffness", "kN/m", "kip/in", 0, 1),
     ("rotational stiffness", "kN*m/rad", "kip*ft/rad", 0, 0),
     ("bending stiffness", "kN*m2", "kip*ft2", 0, 0),

@@ -254,7 +254,7 @@ def test_start_makes_a_job_of_the_templates(
     assert job.workbooks[:2] == ("design-basis", "wind-pressure")
     assert job.record("design-basis").entries["issue_date"].value == TODAY
     assert "calcbook set design-basis" in text
-    assert "unconfirmed: job_name" in printed(capsys, "status", str(folder))
+    assert "unconfirmed: revision, issue_date, code_set" in printed(capsys, "status", str(folder))
 
 
 @pytest.fixture(scope="module")

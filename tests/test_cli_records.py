@@ -9,7 +9,7 @@ import sys
 from typing import TYPE_CHECKING
 
 import pytest
-from command_line import printed, results
+from command_line import printed, refused, results, says
 from notebooks import BASIS, LOADS, WIND, contents, make_job
 
 from calcbook.cli import main
@@ -93,7 +93,7 @@ def test_confirming_a_whole_workbook(folder: Path, capsys: pytest.CaptureFixture
     assert [row.key for row in found.schedules["levels"]] == ["Roof", "L1"]
     items = [*found.entries.values(), *found.schedules["levels"]]
     assert all(found.is_confirmed(item, "MC-1") for item in items)
-    assert "unconfirmed: seen_by\n" in printed(capsys, "status", ".")
+    assert "wind: checks: 1 satisfied\nloads: " in printed(capsys, "status", ".")
 
 
 def test_what_cannot_be_confirmed_is_named(
@@ -108,6 +108,37 @@ def test_what_cannot_be_confirmed_is_named(
     assert "not confirmed: 1.1 V: V: 9 m/s is outside the range" in text
     entries = record(folder, "wind").entries
     assert (entries["V"].confirmed, entries["C"].confirmed is None) == (None, False)
+
+
+def test_source_of_what_is_set(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """--source is recorded with each value and row set in the call, and with nothing else."""
+    (folder / "r.csv").write_text("Level,z (m),source\nRoof,9,A-2\nL1,4,\n")
+    printed(capsys, "set", "wind", "C=0.7", "--source", "before")
+    words = ("V=50 m/s", "--rows", "levels=r.csv", "--source", " wind map, sheet 3 ")
+    printed(capsys, "set", "wind", *words)
+    found = record(folder, "wind")
+    sources = {name: entry.source for name, entry in found.entries.items()}
+    assert sources == {"C": "before", "V": "wind map, sheet 3"}
+    assert [row.source for row in found.schedules["levels"]] == ["wind map, sheet 3"] * 2
+    printed(capsys, "set", "wind", "V=51 m/s")
+    assert record(folder, "wind").entries["V"].source == "wind map, sheet 3"
+
+
+def test_a_source_changes_no_confirmation(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """The same value set again with a source stays confirmed: the value is what was confirmed."""
+    printed(capsys, "set", "design-basis", "job_number=MC-1")
+    printed(capsys, "set", "wind", "V=50 m/s", "--confirm", "RA")
+    printed(capsys, "set", "wind", "V=50 m/s", "--source", "wind map")
+    entry = record(folder, "wind").entries["V"]
+    assert (entry.source, entry.confirmed is not None) == ("wind map", True)
+
+
+def test_a_source_without_a_value_is_refused(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A source belongs to what is set in the same call; confirming alone takes none."""
+    message = refused(capsys, folder, "set", "wind", "--source", "map", "--confirm", "RA")
+    says(message, "nothing is set", "write NAME=VALUE or --rows")
 
 
 def test_rows_keep_their_confirmation(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
@@ -163,11 +194,8 @@ def test_status_tells_how_each_workbook_stands(
     before = contents(folder)
     text = printed(capsys, "status", ".", status=1)
     for part in (
-        (
-            "design-basis: no checks\n  unconfirmed: job_number, units, h\n"
-            "  not used with NSCP 2015: K_e\n"
-        ),
-        "wind: checks: 1 satisfied\n  unconfirmed: V, C, wall, seen_by, levels (Roof, L1)\n",
+        ("design-basis: no checks\n  unconfirmed: units, h\n  not used with NSCP 2015: K_e\n"),
+        "wind: checks: 1 satisfied\n  unconfirmed: V, C, wall, levels (Roof, L1)\n",
         (
             "loads: checks: 1 NOT SATISFIED\n"
             "  NOT SATISFIED: 1.4 Capacity, F <= '100 kN', ratio 1.50\n"

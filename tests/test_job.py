@@ -196,6 +196,21 @@ def test_records_lie_beside_the_notebooks(job: Job) -> None:
     assert job.record("floor-beam", "B2").entries == {"L": EntryRecord("6 m")}
 
 
+def test_fillings_are_every_mark_of_every_workbook(job: Job) -> None:
+    """A workbook without marks has one filling; with marks one each, and its own where recorded."""
+    for mark in ("B10", "B2"):
+        record = job.record("floor-beam", mark)
+        record.change(entries={"L": EntryRecord("6 m")})
+        record.save()
+    beams = [f for f in job.fillings() if f[0] == "floor-beam"]
+    assert beams == [("floor-beam", "B2"), ("floor-beam", "B10")]
+    assert [f for f in job.fillings() if f[0] == "wind-pressure"] == [("wind-pressure", None)]
+    record = job.record("floor-beam")
+    record.change(entries={"L": EntryRecord("7 m")})
+    record.save()
+    assert ("floor-beam", None) in job.fillings()
+
+
 def test_file_that_only_looks_like_a_record_is_named(job: Job) -> None:
     """A copy made by a file manager is refused, not passed over."""
     (job.folder / "floor-beam.B1 - Copy.toml").write_text("")

@@ -150,7 +150,10 @@ def check(text: str, **entries: str) -> dict[str, Any]:
         ("a < b", "3.9999", "4", True, "0.99998"),
         ("a >= b", "5", "4", True, "0.80"),
         ("a >= b", "3.999", "4", False, "1.0003"),
-        ("a > b", "7.2", "0", True, "0.00"),
+        ("a > b", "7.2", "0", True, ""),
+        ("a <= b", "0", "4", True, ""),
+        ("a >= b", "0", "0", True, ""),
+        ("a <= b", "1", "1e-320", False, ""),
         ("a >= b", "-5", "-8", True, "0.63"),
         ("a >= b", "-9", "-8", False, "1.13"),
         ("a <= b", "-5", "-3", True, "0.60"),
@@ -166,6 +169,17 @@ def test_verdicts_and_ratios(text: str, a: str, b: str, held: bool, ratio: str |
     assert found["satisfied"] is held
     if ratio is not None:
         assert found["ratio_text"] == ratio
+
+
+def test_words_left_empty_wait_for_nobody() -> None:
+    """An empty text is an entry that needs no confirmation; one with words in it does."""
+    book = books.book({"seen_by": ""})
+    with book.section("S") as s:
+        s.text("job_name", "Job", "Clinic")
+        s.text("seen_by", "Seen by")
+        s.entry("V", "Speed", "40 m/s", unit="speed")
+    counts = book.statement()["counts"]
+    assert (counts["entries"], counts["unconfirmed"]) == (3, 2)
 
 
 @settings(max_examples=200, deadline=None)

@@ -17,9 +17,9 @@ from calcbook.commands import review
 from calcbook.commands.common import Progress, Steps
 from calcbook.diskfile import in_plain_words, write_whole
 from calcbook.errors import InputError, JobError
-from calcbook.job import Job, template_folder, templates
+from calcbook.job import BASIS, Job, template_folder, templates
 from calcbook.record import EntryRecord
-from calcbook.run import BASIS, Filling, Runner
+from calcbook.run import Filling, Runner
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -106,12 +106,13 @@ def demo(arguments: Namespace) -> int:
     folder: Path = arguments.folder
     steps = Steps(sys.stdout)
     steps(f"job folder {folder}")
-    found = templates()
+    source = template_folder() / "demo"  # its notebooks hold the outputs of the filled records
+    found = {path.stem: path for path in sorted(source.glob("*.ipynb"))}
     job = Job.start(folder, _order(list(found)), found)
     made: list[Path] = []
     try:
         with in_plain_words(folder, JobError):
-            for path in sorted((template_folder() / "demo").glob("*.toml")):
+            for path in sorted(source.glob("*.toml")):
                 made.append(folder / path.name)
                 write_whole(made[-1], path.read_bytes())
         status = _make_pack(job, None, steps, made)

@@ -5,35 +5,17 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from calcbook.run import all_items
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
-    from calcbook.job import Job
-
-_ENTERED = frozenset({"entry", "choice", "text"})
 _FOLLOWS = "not available because of "
-
-
-def fillings(job: Job) -> list[tuple[str, str | None]]:
-    """Return every workbook of a job with each of its marks, in the order of the pack."""
-    found: list[tuple[str, str | None]] = []
-    for workbook in job.workbooks:
-        marks = job.marks(workbook)
-        if not marks or job.record_path(workbook).exists():
-            found.append((workbook, None))
-        found += [(workbook, mark) for mark in marks]
-    return found
 
 
 def checks(statement: Mapping[str, object]) -> list[Mapping[str, object]]:
     """Return the checks that apply, in order."""
     return [i for i in all_items(statement) if i["kind"] == "check" and i["applies"]]
-
-
-def verdict(check: Mapping[str, object]) -> str:
-    """Return the verdict of a check in words."""
-    return {True: "satisfied", False: "NOT SATISFIED"}.get(check["satisfied"], "undecided")  # type: ignore[call-overload,no-any-return]
 
 
 def not_satisfied(statement: Mapping[str, object]) -> bool:
@@ -47,14 +29,10 @@ def unconfirmed(statement: Mapping[str, object]) -> list[str]:
     for item in all_items(statement):
         if not item["applies"]:
             continue
-        entered = item["kind"] in _ENTERED or (item["kind"] == "carried" and item["fallback"])
-        if entered and not item["confirmed"]:
+        if is_unconfirmed(item):
             found.append(str(item["name"]))
-        if item["kind"] == "schedule" and not item["fixed"]:
-            rows: list[str] = item["rows"]
-            by: list[str] = item["confirmed"]
-            keys = [key for key, initials in zip(rows, by, strict=True) if not initials]
-            found += [f"{item['name']} ({', '.join(keys)})"] if keys else []
+        if keys := unconfirmed_rows(item):
+            found.append(f"{item['name']} ({', '.join(keys)})")
     return found
 
 

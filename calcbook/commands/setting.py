@@ -18,8 +18,9 @@ from calcbook.errors import (
     UsageError,
 )
 from calcbook.items import Choice, Entry, Schedule, Text
+from calcbook.job import BASIS, JOB_NUMBER
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
-from calcbook.run import BASIS, Filling, Runner, carries
+from calcbook.run import Filling, Runner, carries
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -30,19 +31,22 @@ if TYPE_CHECKING:
     from calcbook.job import Job
     from calcbook.workbook import Workbook
 
-JOB_NUMBER = "job_number"
 TRIES = 5  # a record that others keep changing is read again this often
 LONGEST_INITIALS = 12
 
 
 @dataclass(frozen=True)
 class Wish:
-    """What the command line asks for: entries and files of rows by name, and who confirms."""
+    """What the command line asks for: entries and files of rows by name, and who confirms.
+
+    ``source`` is where all of it comes from; None leaves the sources on record.
+    """
 
     job: Job
     target: Target
     sets: Mapping[str, str]
     files: Sequence[str]
+    source: str | None
     initials: str | None
 
 
@@ -55,7 +59,7 @@ class Change:
 
 
 def set_values(arguments: Namespace) -> int:
-    """Write entries and rows into the record of a job's workbook, and confirm them.
+    """Write entries and rows into the record of a job's workbook, state their source, confirm them.
 
     Nothing is written unless the workbook accepts all of it.
     """
@@ -65,9 +69,15 @@ def set_values(arguments: Namespace) -> int:
             "there is nothing to set",
             hint="write NAME=VALUE, --rows SCHEDULE=FILE.csv or --confirm INITIALS",
         )
+    if not sets and not arguments.rows and arguments.source is not None:
+        raise UsageError(
+            "--source says where what is set comes from, and nothing is set",
+            hint="write NAME=VALUE or --rows SCHEDULE=FILE.csv beside it",
+        )
     initials = None if arguments.confirm is None else _initials(arguments.confirm)
     target = find_target(arguments.workbook)
-    wish = Wish(_job_of(target, arguments.workbook), target, sets, arguments.rows, initials)
+    job, source = _job_of(target, arguments.workbook), arguments.source
+    wish = Wish(job, target, sets, arguments.rows, source and source.strip(), initials)
     with Progress() as progress:
         for _ in range(TRIES - 1):
             with suppress(RecordChangedError):
@@ -122,6 +132,7 @@ def _attempt(wish: Wish, progress: Progress) -> None:
             {n: _entry(record, n, book.accept(n, text)) for n, text in wish.sets.items()},
             {n: _rows(record, n, found) for n, found in rows.items()},
         )
+        _state_source(change, wish.source)
     if wish.initials is not None:
         _confirm(change, _stamp(wish, book, wish.initials))
     record.change(change.entries, change.rows)
@@ -167,6 +178,15 @@ def _rows(record: Record, name: str, rows: Sequence[RowRecord]) -> list[RowRecor
             old.confirmed if same and old else None,
         ))  # fmt: skip
     return found
+
+
+def _state_source(change: Change, source: str | None) -> None:
+    if source is None:
+        return
+    for entry in change.entries.values():
+        entry.source = source
+    for row in (row for rows in change.rows.values() for row in rows):
+        row.source = source
 
 
 def _everything(book: Workbook) -> Change:

@@ -11,7 +11,8 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook import typeset
 from calcbook.live import wording
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import FROM_MEMORY, OUTSIDE, not_applied, option_words, verdict
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator, Mapping
@@ -119,7 +120,7 @@ def blocks(section: Plain) -> Iterator[Block]:
 def block(item: Plain) -> Block:
     """Return one item as a block; one that does not apply says why, and nothing else."""
     if not item["applies"]:
-        said = wording.not_applied(item)
+        said = not_applied(item)
         return Block("idle", item["number"], (item["meaning"],), ((said,),), item=item)
     return _SHAPES[item["kind"]](item)
 
@@ -127,7 +128,7 @@ def block(item: Plain) -> Block:
 def _common(item: Plain) -> dict[str, Any]:
     notes: list[Words] = [(item["clause"],)] if item.get("clause") else []
     notes += [(item["note"].rstrip("."),)] if item.get("note") else []
-    notes += [(Strong(wording.FROM_MEMORY),)] if item.get("memory") else []
+    notes += [(Strong(FROM_MEMORY),)] if item.get("memory") else []
     return {
         "kind": item["kind"], "number": item["number"], "words": (item["meaning"],), "item": item,
         "notes": tuple(notes), "troubles": (item["problem"],) if item.get("problem") else (),
@@ -140,7 +141,7 @@ def _given(item: Plain, says: Words) -> Block:
     common["notes"] += tuple((words,) for words in told if words)
     return Block(
         **common, says=(says,), standing=wording.standing(item),
-        unconfirmed=not item.get("confirmed"),
+        unconfirmed=is_unconfirmed(item),
     )  # fmt: skip
 
 
@@ -202,8 +203,7 @@ def _line(item: Plain, within: str = "") -> Block:
 
 
 def _check(item: Plain) -> Block:
-    verdict = wording.verdict(item)
-    says: Words = (wording.compared(item), Strong(verdict))
+    says: Words = (wording.compared(item), Strong(verdict(item)))
     return Block(**_common(item), says=((Relation(item["text"]),), says))
 
 
@@ -228,7 +228,7 @@ def _error(item: Plain) -> Block:
 def _table(item: Plain) -> Block:
     down, *across = item["axes"]
     common = _common(item)
-    common["notes"] += ((f"between points by straight lines; {wording.OUTSIDE[item['outside']]}",),)
+    common["notes"] += ((f"between points by straight lines; {OUTSIDE[item['outside']]}",),)
     if not across:
         heads = (_head(down["name"], down["unit"]), _head(item["name"], item["unit"]))
         cells = tuple(
@@ -260,7 +260,7 @@ def _schedule(item: Plain) -> Block:
     common["troubles"] += tuple(wording.schedule_troubles(item))
     return Block(
         **common, grid=schedule_grid(item), says=tuple(_legend(item)),
-        unconfirmed=not item["fixed"] and not all(item["confirmed"]),
+        unconfirmed=bool(unconfirmed_rows(item)),
     )  # fmt: skip
 
 

@@ -11,8 +11,8 @@ from calcbook.errors import CalcbookError
 from calcbook.items import Carry, Choice, Text
 from calcbook.live import page
 from calcbook.live.session import refusal
-from calcbook.live.wording import APPLY, not_applied
-from calcbook.wording import option_label
+from calcbook.live.wording import APPLY
+from calcbook.wording import not_applied, option_label
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -193,7 +193,8 @@ class EntryField:
         say(self.words, page.words(block.words))
         toggle(self.widget, "cb-idle", on=not item["applies"])
         show_widget(self.line, on=item["applies"])
-        show_widget(self.mark, on=item["applies"] and self.session.job is not None)
+        given = item["applies"] and bool(block.standing)
+        show_widget(self.mark, on=given and self.session.job is not None)
         show_widget(self.back, on=self._typed_over(item))
         say(self.notes, page.notes(block.notes if self.session.job else block.remarks))
         if not item["applies"]:

@@ -11,7 +11,8 @@ from typing import TYPE_CHECKING, Any
 from calcbook import figures, formula, typeset, units
 from calcbook.errors import CalcbookError
 from calcbook.live import blocks as parts
-from calcbook.live.wording import LEFT_OVER, not_applied
+from calcbook.live.wording import LEFT_OVER
+from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping

@@ -10,10 +10,10 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CalcbookError, InputError, RecordChangedError, RecordError
-from calcbook.job import Job
+from calcbook.job import BASIS, JOB_NUMBER, Job
 from calcbook.live import notebook, output
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
-from calcbook.run import BASIS, Filling, Runner, open_book
+from calcbook.run import Filling, Runner, open_book
 from calcbook.workbook import entered_columns
 
 if TYPE_CHECKING:
@@ -31,6 +31,7 @@ MERGED = "The record was changed elsewhere meanwhile; it has been read again."
 UNSIGNED = "type the job number and 'prepared by' in the design basis"
 SHOWN_NOW = "what the record says now is shown; type again to change it"
 WAIT_SECONDS = 2.0
+PREPARED_BY = "prepared_by"
 
 
 @dataclass(frozen=True)
@@ -180,10 +181,10 @@ class Session:
         if self.job is None:
             return Signer("", "")
         basis = self.record if self.book.name == BASIS else self.job.record(BASIS)
-        found = {n: e.value for n, e in basis.entries.items() if n in ("job_number", "prepared_by")}
+        found = {n: e.value for n, e in basis.entries.items() if n in (JOB_NUMBER, PREPARED_BY)}
         if self.book.name == BASIS:
             found |= dict([entering])
-        return Signer(found.get("job_number", ""), found.get("prepared_by", ""))
+        return Signer(found.get(JOB_NUMBER, ""), found.get(PREPARED_BY, ""))
 
     def enter(self, name: str, text: str, *, bare: units.Unit | None = None) -> None:
         """Take a typed entry: read it strictly, write it confirmed, recompute.

@@ -10,6 +10,7 @@ from calcbook.pack import front, prose
 from calcbook.pack.anchors import Anchors, items, printed_name
 from calcbook.pack.items import Writer, governing
 from calcbook.pack.nodes import Node, joined, numbers, phrase, words
+from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -181,8 +182,3 @@ def _section(part: dict[str, Any], label: str, writer: Writer) -> list[Node]:
 
 def _skipped(skipped: dict[str, list[str]]) -> list[Node]:
     return [{"t": "skipped", "c": [f"{numbers(n)} ", *phrase(why)]} for why, n in skipped.items()]
-
-
-def not_applied(part: dict[str, Any]) -> str:
-    """Return why a section or an item is not applied, in words."""
-    return f"not applied: {part['why']}" if part.get("why") else "not applied"

@@ -5,12 +5,14 @@ from __future__ import annotations
 import re
 from typing import TYPE_CHECKING, Any
 
-from calcbook.pack import nodes, prose
+from calcbook.pack import prose
 from calcbook.pack.anchors import items, printed_name
-from calcbook.pack.items import FROM_MEMORY, carried_words, judged, moved, verdict
+from calcbook.pack.items import carried_words, moved, verdict
 from calcbook.pack.nodes import Node, link, page, phrase, strong, symbol, typed, words
 from calcbook.pack.schedules import named
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import FROM_MEMORY, amount, option_words
+from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator
@@ -160,7 +162,7 @@ def _result(index: int, result: dict[str, Any], anchors: Anchors) -> Row:
         link(anchors.item(index, number), number),
         phrase(result.get("meaning", "")),
         [symbol(result["name"])],
-        [strong(nodes.value(result["value"]))],
+        [strong(amount(result["value"]))],
         [words(result.get("sign") or "")],
         page_of(anchors, index, number),
     ]
@@ -182,24 +184,18 @@ def _problem(item: Item) -> str:
 def _unconfirmed(item: Item) -> list[Node]:
     """Return the value and source of an entry nobody confirmed, or nothing."""
     kind = item["kind"]
-    if kind == "schedule":
-        rows = [] if item.get("fixed") else item.get("confirmed") or []
-        keys = [key for key, by in zip(item["rows"], rows, strict=False) if not by]
-        return [f"rows: {named(keys, len(item['rows']))}"] if keys else []
-    if item.get("confirmed") or kind not in ("entry", "text", "choice", "carried"):
-        return []
-    if kind == "carried" and not item.get("fallback"):
+    if keys := unconfirmed_rows(item):
+        return [f"rows: {named(keys, len(item['rows']))}"]
+    if not is_unconfirmed(item):
         return []
     if kind == "carried":
         return [*carried_words(item), "; fallback value"]
-    if kind == "text" and not item.get("text"):
-        return [strong("nothing entered")]
     if kind == "text":
         shown = item["text"]
     elif kind == "choice":
         shown = option_words(item)
     else:
-        shown = nodes.value(item.get("value"))
+        shown = amount(item.get("value"))
     source = f"; {words(item['source'])}" if item.get("source") else ""
     return [typed(words(shown)), source]
 

@@ -9,18 +9,18 @@ from calcbook import formula, typeset, units
 from calcbook.errors import PackError
 from calcbook.pack import nodes, schedules
 from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed
+from calcbook.wording import FROM_MEMORY, OUTSIDE, amount, option_words
+from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
     from collections.abc import Callable
 
     from calcbook.pack.anchors import Anchors, Item, Statement
 
-FROM_MEMORY = "from memory: confirm against the code"
 LONG_TEXT = 500
 SURELY_FITS = 50  # characters of a formula that fit on a line whatever they are
 READ = " is read between the points by straight lines; "
-OUTSIDE = {"hold": "outside them the value at the edge holds", "refuse": "not valid outside them"}
 
 
 @dataclass(frozen=True)
@@ -95,9 +95,9 @@ class Writer:
         return notes
 
     def _entry(self, item: Item) -> dict[str, Any]:
-        value = _equals(item.get("name"), typed(words(nodes.value(item["value"]))))
+        value = _equals(item.get("name"), typed(words(amount(item["value"]))))
         if item.get("shown"):
-            value += [" = ", nodes.value(item["shown"])]
+            value += [" = ", amount(item["shown"])]
         return {"t": "entry", "value": value, "notes": confirmation(item)}
 
     def _text(self, item: Item) -> dict[str, Any]:
@@ -242,24 +242,22 @@ def verdict(item: Item) -> list[Node]:
     demand, limit = item.get("demand") or {}, item.get("limit") or {}
     if not demand.get("text") and not limit.get("text"):
         return [strong(judged(item))]
-    shown = nodes.value(demand)
+    shown = amount(demand)
     if demand.get("text") and limit.get("text") and demand.get("unit") == limit.get("unit"):
-        shown = nodes.value({**demand, "unit": ""})
+        shown = amount({**demand, "unit": ""})
     ratio = f", ratio {item['ratio_text']}" if item.get("ratio_text") else ""
-    return [f"demand {shown}, limit {nodes.value(limit)}{ratio}: ", strong(judged(item))]
-
-
-def judged(item: Item) -> str:
-    """Return a check's verdict in words."""
-    return {True: "satisfied", False: "NOT SATISFIED", None: "not decided"}[item["satisfied"]]
+    return [f"demand {shown}, limit {amount(limit)}{ratio}: ", strong(judged(item))]
 
 
 def confirmation(item: Item) -> list[list[Node]]:
-    """Return whether the value is confirmed, by whom, and where it comes from."""
+    """Return whether the value is confirmed, by whom, and where it comes from.
+
+    Nothing is said of words left empty: there is nothing in them to confirm.
+    """
     source = f": {words(item['source'])}" if item.get("source") else ""
     if item.get("confirmed"):
         return [[f"confirmed {words(item['confirmed'])}{source}"]]
-    return [[strong("not confirmed"), source]]
+    return [[strong("not confirmed"), source]] if is_unconfirmed(item) else []
 
 
 def carried_words(item: Item) -> list[Node]:
@@ -268,7 +266,7 @@ def carried_words(item: Item) -> list[Node]:
         return [words(option_words(item))]
     if item.get("text") is not None:
         return [words(item["text"] or "nothing carried")]
-    return _equals(item.get("name"), nodes.value(item.get("value")))
+    return _equals(item.get("name"), amount(item.get("value")))
 
 
 def moved(item: Item) -> str:
@@ -276,7 +274,7 @@ def moved(item: Item) -> str:
     was, now = item.get("taken") or {}, item.get("value") or {}
     if not was.get("text") or not now.get("text"):
         return "it has moved on since it was taken"
-    return f"was {nodes.value(was)} when taken, is now {nodes.value(now)}"
+    return f"was {amount(was)} when taken, is now {amount(now)}"
 
 
 def origin_words(anchors: Anchors, item: Item) -> list[Node]:

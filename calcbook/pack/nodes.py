@@ -86,13 +86,6 @@ def symbol(name: str) -> Node:
     return math(typeset.symbol(name, "typst"), typeset.symbol(name, "plain"))
 
 
-def value(value: dict[str, Any] | None) -> str:
-    """Return a value of a statement with its unit, or words where there is none."""
-    if not value or not value.get("text"):
-        return "not available"
-    return typeset.number(value["text"], value.get("unit", ""), "plain")
-
-
 def joined(parts: Sequence[Sequence[Node]], separator: str) -> list[Node]:
     """Return the parts one after the other with a separator between them."""
     result: list[Node] = []

@@ -6,11 +6,11 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CarryError
 from calcbook.figures import draw
-from calcbook.job import Job
+from calcbook.job import BASIS, Job
 from calcbook.pack.compile import make_pack
 from calcbook.pack.cover import Cover
 from calcbook.record import CarriedRecord, update
-from calcbook.run import BASIS, Filling, Runner, all_items, carries, find_item, item_digest
+from calcbook.run import Filling, Runner, all_items, carries, find_item, item_digest
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -36,7 +36,7 @@ def pack_job(
         A workbook stops, the carries go in a circle, or the pages cannot be printed.
     """
     runner = Runner(job, progress)
-    wanted = [(w, mark) for w in job.workbooks for mark in (job.marks(w) or (None,))]
+    wanted = job.fillings()
     for workbook, mark in wanted:
         runner.statement(workbook, mark)
     _take(runner)

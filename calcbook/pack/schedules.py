@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook import formula, typeset, units
 from calcbook.pack import nodes
-from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, value, words
+from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, words
+from calcbook.wording import amount
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -97,7 +98,7 @@ def remarks(item: Item) -> list[list[Node]]:
     said: list[list[Node]] = []
     governs = [
         [strong(words(part["row"])), f", {part['which']} ", symbol(part["column"]),
-         f" = {value(part['value'])}"]
+         f" = {amount(part['value'])}"]
         for part in item.get("envelope", ())
     ]  # fmt: skip
     if governs:

@@ -6,6 +6,7 @@ import math
 from typing import Any
 
 from calcbook.pack import Cover
+from calcbook.standing import is_unconfirmed
 
 Plain = dict[str, Any]
 SVG = (
@@ -105,7 +106,7 @@ def statement(workbook: str, title: str, *parts: Plain, **more: object) -> Plain
     checks = [i for i in items if i["kind"] == "check"]
     counts = {
         "entries": len(asked) + len(rows),
-        "unconfirmed": sum(not i["confirmed"] for i in asked) + sum(not c for c in rows),
+        "unconfirmed": sum(map(is_unconfirmed, items)) + sum(not c for c in rows),
         "checks": len(checks),
         "not_satisfied": sum(i["satisfied"] is False for i in checks),
         "problems": sum(bool(i["problem"]) or i["kind"] == "error" for i in items),

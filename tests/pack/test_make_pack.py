@@ -142,6 +142,18 @@ def test_first_page_counts(pages: list[str]) -> None:
     assert "same person" not in first
 
 
+def test_words_left_empty_are_neither_confirmed_nor_waited_for() -> None:
+    """Nothing entered is said where it stands; it is not listed among what nobody confirmed."""
+    empty = {"text": "", "source": "", "confirmed": "", "fallback": False}
+    seen = clinic.item("text", "1.1", "seen_by", "Seen by", **empty)
+    revision = clinic.item("text", "1.2", "revision", "Revision", **(empty | {"text": "B"}))
+    whole = " ".join(texts(packed(one(seen, revision))))
+    assert whole.count("nothing entered") == 1
+    assert whole.count("1.1 Seen by") == 1
+    assert whole.count("1.2 Revision") == 2
+    assert "1 entry or row not confirmed" in whole
+
+
 @pytest.mark.parametrize("checked", ["RA", " ra "])
 def test_same_person_is_warned_of(checked: str) -> None:
     """When one person prepared and checked, page one says so in words."""
