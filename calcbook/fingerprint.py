@@ -7,6 +7,7 @@ import json
 from typing import TYPE_CHECKING, Any
 
 from calcbook.items import Check, Line, Schedule, TableItem
+from calcbook.shown import twelve
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -46,8 +47,11 @@ def _carried(item: Mapping[str, Any] | None) -> object:
         return None
     value = item.get("value")
     if isinstance(value, dict):
-        return [value.get("si"), value.get("unit")]
-    columns = [[c.get("name"), c.get("si"), c.get("texts")] for c in item.get("columns", ())]
+        return [twelve(value.get("si")), value.get("unit")]
+    columns = [
+        [c.get("name"), [twelve(si) for si in c.get("si") or ()], c.get("texts")]
+        for c in item.get("columns", ())
+    ]
     return [item.get("option"), item.get("text"), item.get("rows"), columns]
 
 

@@ -47,7 +47,7 @@ if TYPE_CHECKING:
     from calcbook.table import Table
     from calcbook.workbook import Workbook
 
-__all__ = ["SCHEMA", "Writer", "fingerprint", "plain_value", "schema", "twelve"]
+__all__ = ["SCHEMA", "Writer", "fingerprint", "plain_value", "schema", "twelve", "twelve_digits"]
 
 SCHEMA = 1
 Plain = dict[str, Any]
@@ -239,7 +239,7 @@ class Writer:
             "relation": relation,
             "demand": left,
             "limit": right,
-            "ratio": twelve(used),
+            "ratio": used,
             "ratio_text": "" if used is None else ratio_text(used, relation, held),
             "satisfied": held,
         }
@@ -363,3 +363,18 @@ def _table(table: Table) -> Plain:
 
 def _nested(values: Sequence[Any], convert: Callable[[float], object]) -> list[object]:
     return [_nested(v, convert) if isinstance(v, (tuple, list)) else convert(v) for v in values]
+
+
+def twelve_digits(data: Any) -> Any:  # noqa: ANN401  (plain data nests)
+    """Return plain data with every float at twelve significant digits, as JSON results carry.
+
+    A statement itself holds full doubles: a value carried from one workbook to another must not
+    move across a threshold by being rounded on the way.
+    """
+    if isinstance(data, float):
+        return twelve(data)
+    if isinstance(data, dict):
+        return {key: twelve_digits(value) for key, value in data.items()}
+    if isinstance(data, (list, tuple)):
+        return [twelve_digits(value) for value in data]
+    return data

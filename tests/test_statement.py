@@ -16,7 +16,7 @@ from hypothesis import strategies as st
 from calcbook import typeset
 from calcbook.inputs import Carried, Given
 from calcbook.run import Filling, Runner
-from calcbook.statement import schema
+from calcbook.statement import schema, twelve_digits
 from calcbook.units import unit
 
 if TYPE_CHECKING:
@@ -94,11 +94,11 @@ def test_a_schedule_with_totals_and_the_governing_row_in_full() -> None:
     assert columns["v"]["si"] == [6.0, 2.0, 10.0]
     assert columns["u"]["total"]["text"] == "12.000"
     assert (item["governing"]["row"], item["governing"]["why"]) == ("R2", "largest v")
-    names = [line["name"] for line in item["governing"]["lines"]]
-    assert names == ["u", "v"]
-    worked = item["governing"]["lines"][0]
-    assert worked["values"] == {"w": {"text": "2", "unit": "m"}}
-    assert worked["value"]["text"] == "4.000"
+    worked = [(line["row"], line["name"]) for line in item["governing"]["lines"]]
+    assert worked == [("R2", "u"), ("R2", "v"), ("R1", "u"), ("R1", "v"), ("R0", "u")]
+    first = item["governing"]["lines"][0]
+    assert first["values"] == {"w": {"text": "2", "unit": "m"}}
+    assert first["value"]["text"] == "4.000"
     assert [e["row"] for e in item["envelope"]] == ["R2", "R1", "R0"]
     assert found["t"]["value"]["si"] == 12.0 + 6.0 - 1.0
 
@@ -310,7 +310,10 @@ def test_same_inputs_give_the_same_bytes_in_any_process() -> None:
 
 
 def test_numbers_carry_twelve_digits() -> None:
-    """JSON values have twelve significant digits, in SI and in their unit."""
+    """A statement holds full doubles; as JSON it has twelve significant digits everywhere."""
     value = books.item(books.lines("x = a/3", entries={"a:length": "1 ft"}), "x")["value"]
-    assert value["si"] == float(f"{0.3048 / 3:.12g}")
-    assert value["value"] == float(f"{0.3048 / 3 / unit(value['unit']).factor:.12g}")
+    assert value["si"] == 0.3048 / 3
+    assert twelve_digits([value])[0]["si"] == float(f"{0.3048 / 3:.12g}")
+    assert twelve_digits([value])[0]["value"] == float(
+        f"{0.3048 / 3 / unit(value['unit']).factor:.12g}"
+    )
