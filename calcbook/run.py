@@ -23,6 +23,7 @@ from calcbook.errors import CalcbookError, CarryError, InputError, JobError, nea
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
 from calcbook.job import BASIS, Job, templates
+from calcbook.shown import twelve
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
@@ -291,7 +292,7 @@ def item_digest(item: Mapping[str, Any]) -> str:
     value: Mapping[str, Any] = item.get("value") or {}
     columns: Sequence[Mapping[str, Any]] = item.get("columns") or ()
     basis = [
-        value.get("si"),
+        twelve(value.get("si")),
         value.get("unit"),
         item.get("option"),
         item.get("text"),
@@ -301,7 +302,7 @@ def item_digest(item: Mapping[str, Any]) -> str:
             [
                 c["name"],
                 c["unit"],
-                c["si"],
+                [twelve(si) for si in c["si"]],
                 c["texts"] if c["si"] == [None] * len(c["texts"]) else 0,
             ]
             for c in columns

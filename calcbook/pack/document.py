@@ -10,6 +10,7 @@ from calcbook.pack import front, prose
 from calcbook.pack.anchors import Anchors, items, printed_name
 from calcbook.pack.items import Writer, governing
 from calcbook.pack.nodes import Node, joined, numbers, phrase, words
+from calcbook.statement import twelve_digits
 from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
@@ -84,7 +85,9 @@ def _attach(statements: list[Statement], files: dict[str, bytes]) -> list[dict[s
     attached = []
     for index, statement in enumerate(statements):
         file = f"statement-{index}.json"
-        text = json.dumps(statement, ensure_ascii=False, allow_nan=False, indent=1, sort_keys=True)
+        text = json.dumps(
+            twelve_digits(statement), ensure_ascii=False, allow_nan=False, indent=1, sort_keys=True
+        )
         files[file] = text.encode()
         name = ".".join(p for p in (statement["workbook"], statement.get("mark"), "json") if p)
         description = f"Statement of {printed_name(statement)}: every item as plain data"
