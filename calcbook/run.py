@@ -14,7 +14,6 @@ from contextvars import ContextVar
 from dataclasses import dataclass, field
 from functools import cache
 from importlib import metadata
-from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from calcbook import codes
@@ -22,12 +21,13 @@ from calcbook.cells import read_cells, run_cell
 from calcbook.errors import CalcbookError, CarryError, InputError, JobError, near_match
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
-from calcbook.job import BASIS, Job, templates
+from calcbook.job import BASIS, Job
 from calcbook.shown import twelve
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
+    from pathlib import Path
 
     from calcbook.codes import CodeSet
     from calcbook.record import CarriedRecord, EntryRecord, Record, RowRecord
@@ -56,12 +56,19 @@ class Runner:
         The job the workbooks belong to; None runs templates alone.
     progress
         Called with one line of text when a workbook starts.
+    forget_taken
+        Take every carried value as it is now, whatever was taken before: nothing is stale.
     """
 
     def __init__(
-        self, job: Job | None = None, progress: Callable[[str], None] | None = None
+        self,
+        job: Job | None = None,
+        progress: Callable[[str], None] | None = None,
+        *,
+        forget_taken: bool = False,
     ) -> None:
         self.job = job
+        self.forget_taken = forget_taken
         self.progress = progress or (lambda _text: None)
         self.books: dict[tuple[str, str | None], tuple[Workbook, Plain]] = {}
         self._running: list[str] = []
@@ -141,7 +148,7 @@ class Runner:
             typed.entries[name] = Given(text, "set for this run")
         for name, rows in filling.rows.items():
             typed.rows[name] = [GivenRow(r.key, r.cells, r.source) for r in rows]
-        taken = record.carried if record is not None else {}
+        taken = record.carried if record is not None and not self.forget_taken else {}
         typed.carried = lambda origin: self.carried(origin, taken)
         return typed
 
@@ -319,28 +326,6 @@ def software() -> dict[str, str]:
         with contextlib.suppress(metadata.PackageNotFoundError):
             found[library] = metadata.version(library)
     return found
-
-
-def find_notebook(name: str, job: Job | None) -> Path:
-    """Return the notebook of a WORKBOOK argument: a path, the job's copy, else the template.
-
-    Raises JobError with the nearest name when there is none.
-    """
-    if name.endswith(".ipynb"):
-        path = Path(name)
-        if not path.is_file():
-            raise JobError(f"there is no notebook '{name}'")
-        return path
-    if job is not None and name in job.workbooks:
-        return job.notebook(name)
-    known = templates()
-    if name in known:
-        return known[name]
-    every = [*known, *(job.workbooks if job is not None else ())]
-    raise JobError(
-        f"there is no workbook '{name}'",
-        hint=near_match(name, every) or f"there are {', '.join(every)}",
-    )
 
 
 def _run_cells(path: Path, opening: Opening) -> list[tuple[str, str | list[str]]]:

@@ -84,7 +84,11 @@ def test_a_value_is_confirmed_for_the_job(folder: Path, capsys: pytest.CaptureFi
 def test_confirming_a_whole_workbook(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
     """All that has a value is confirmed, the template's values and rows with their sources too."""
     printed(capsys, "set", "design-basis", "job_number=MC-1")
-    printed(capsys, "set", "wind", "--confirm", "RA")
+    assert printed(capsys, "set", "wind", "--confirm", "RA") == (
+        "V = 40 m/s  (map)\nC = 0.8\nwall = solid\n"
+        "levels, Roof: z = 8 m\nlevels, L1: z = 4 m\n"
+        "3 entries and 2 rows confirmed by RA\nwritten to wind.toml\n"
+    )
     found = record(folder, "wind")
     assert {name: e.value for name, e in found.entries.items()} == {
         "V": "40 m/s", "C": "0.8", "wall": "solid",
@@ -143,6 +147,8 @@ def test_a_source_without_a_value_is_refused(
 
 def test_rows_keep_their_confirmation(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
     """Rows of a file replace those on record; one that is the same stays confirmed."""
+    (folder / "r.csv").write_text("Level,z (m)\nRoof,9\n")
+    assert printed(capsys, "set", "wind", "--rows", "levels=r.csv").startswith("levels: 1 row\n")
     printed(capsys, "set", "design-basis", "job_number=MC-1")
     (folder / "r.csv").write_text("Level,z (m),source\nRoof,9,A-2\nL1,4,A-2\n")
     printed(capsys, "set", "wind", "--rows", "levels=r.csv", "--confirm", "RA")
@@ -194,7 +200,10 @@ def test_status_tells_how_each_workbook_stands(
     before = contents(folder)
     text = printed(capsys, "status", ".", status=1)
     for part in (
-        ("design-basis: no checks\n  unconfirmed: units, h\n  not used with NSCP 2015: K_e\n"),
+        (
+            "design-basis: no checks\n  unconfirmed: units, h\n"
+            "  nothing entered: job_number\n  not used with NSCP 2015: K_e\n"
+        ),
         "wind: checks: 1 satisfied\n  unconfirmed: V, C, wall, levels (Roof, L1)\n",
         (
             "loads: checks: 1 NOT SATISFIED\n"
@@ -204,6 +213,40 @@ def test_status_tells_how_each_workbook_stands(
     ):
         assert part in text
     assert contents(folder) == before
+
+
+FLOORS = (
+    BASIS[0],
+    """with book.section("Levels") as s:
+    s.choice("units", "Units", ["SI", "US"], "SI")
+    with s.schedule("levels", "Levels", rows=[{"key": "Roof", "z": "8 m"}]) as t:
+        t.entry("z", "Elevation", unit="length")""",
+)
+STOREYS = (
+    LOADS[0],
+    """with book.section("Storeys") as s:
+    with s.schedule("storeys", "Storeys", origin="design-basis.levels",
+                    rows=[{"key": "Roof"}]) as t:
+        t.carry("z", "z", "Elevation", unit="length")
+    with s.schedule("more", "More", same_rows="storeys") as t:
+        t.line("d = 2*z", "Twice")""",
+)
+
+
+@pytest.mark.parametrize("change", ["--rows levels=r.csv", "units=US"])
+def test_status_of_rows_that_moved(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch, change: str
+) -> None:
+    """Carried rows that changed since the pack are stale; what has the same rows is not named."""
+    job = make_job(tmp_path / "job", {"design-basis": FLOORS, "loads": STOREYS})
+    monkeypatch.chdir(job)
+    printed(capsys, "pack", ".")
+    assert "stale" not in printed(capsys, "status", ".")
+    (job / "r.csv").write_text("Level,z (m)\nRoof,9\n")
+    printed(capsys, "set", "design-basis", *change.split())
+    text = printed(capsys, "status", ".")
+    stale = [line for line in text.splitlines() if "stale" in line]
+    assert stale == ["  stale: storeys from design-basis.levels: 1 row, changed since taken"]
 
 
 def test_status_of_a_broken_workbook_shows_the_others(

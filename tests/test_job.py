@@ -11,7 +11,7 @@ from pathlib import Path
 import pytest
 
 from calcbook.errors import JobError, RecordError
-from calcbook.job import Job, template_folder, templates
+from calcbook.job import Job, find_notebook, template_folder, templates
 from calcbook.record import EntryRecord, Record
 
 
@@ -180,6 +180,28 @@ def test_unknown_workbook_of_a_job_is_refused(job: Job) -> None:
     """A workbook the job does not have is refused with the nearest one it has."""
     with pytest.raises(JobError, match=r"no workbook 'wind-presure'\ndid you mean 'wind-pressure'"):
         job.notebook("wind-presure")
+
+
+def test_notebook_the_job_does_not_list_is_refused(job: Job) -> None:
+    """A notebook of the folder is not passed over for a template: it is to be listed first."""
+    for name in ("sign-board", "wind-pressure"):
+        notebook(job.folder / f"{name}.ipynb", opening(name))
+    (job.folder / "job.toml").write_text('format = 1\nworkbooks = ["design-basis"]\n')
+    shorter = Job.load(job.folder)
+    for name in ("sign-board", "wind-pressure"):
+        message = f"does not list {name}.ipynb\nadd '{name}' to the list of workbooks in job.toml"
+        with pytest.raises(JobError, match=message):
+            find_notebook(name, shorter)
+
+
+def test_workbook_named_with_its_folder_is_refused(
+    job: Job, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """A job's folder in the name, or in its place, is answered with where to go."""
+    monkeypatch.chdir(job.folder.parent)
+    for name in ("clinic/wind-pressure", "clinic"):
+        with pytest.raises(JobError, match=f"no workbook '{name}'\n.* first: cd clinic$"):
+            find_notebook(name, None)
 
 
 def test_records_lie_beside_the_notebooks(job: Job) -> None:

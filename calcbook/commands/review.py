@@ -6,10 +6,12 @@ from typing import TYPE_CHECKING
 
 from calcbook.run import all_items
 from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import counted
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
+ISSUE = ("job_number", "prepared_by", "issue_date")
 _FOLLOWS = "not available because of "
 
 
@@ -37,17 +39,28 @@ def unconfirmed(statement: Mapping[str, object]) -> list[str]:
 
 
 def stale(statement: Mapping[str, object]) -> list[str]:
-    """Return the carried values whose source has moved, old and new."""
+    """Return the carried values whose source has moved, old and new; of rows only that they did.
+
+    A schedule that has the rows of another one has no source of its own, and is not named.
+    """
     found = []
     for item in all_items(statement):
-        if not item.get("stale"):
+        origin: Mapping[str, object] | None = item.get("from")
+        if not item.get("stale") or origin is None:
             continue
-        origin: Mapping[str, object] = item["from"]
         taken: Mapping[str, object] = item.get("taken") or {}
-        old = f"{taken['text']} -> " if taken else "changed, now "
-        found.append(f"{item['name']} from {origin['workbook']}.{origin['name']}: "
-                     f"{old}{value_text(item)}")  # fmt: skip
+        now = value_text(item)
+        moved = f"{taken['text']} -> {now}" if taken else f"{now}, changed since taken"
+        found.append(f"{item['name']} from {origin['workbook']}.{origin['name']}: {moved}")
     return found
+
+
+def nothing_entered(statement: Mapping[str, object]) -> list[str]:
+    """Return which of the words a package cannot be issued without are empty."""
+    return [
+        str(item["name"]) for item in all_items(statement)
+        if item["kind"] == "text" and item["applies"] and item["name"] in ISSUE and not item["text"]
+    ]  # fmt: skip
 
 
 def value_text(item: Mapping[str, object]) -> str:
@@ -57,7 +70,7 @@ def value_text(item: Mapping[str, object]) -> str:
         return f"{value['text']} {value['unit']}".rstrip()
     if "rows" in item:
         rows: list[str] = item["rows"]  # type: ignore[assignment]
-        return f"{len(rows)} rows: {', '.join(rows)}"
+        return counted(len(rows), "row")
     return str(item.get("option") or item.get("text") or "")
 
 

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress, Target, assignments, find_target, read_rows
+from calcbook.commands.owner import owner_hint
 from calcbook.errors import (
     InputError,
     JobError,
@@ -21,6 +22,7 @@ from calcbook.items import Choice, Entry, Schedule, Text
 from calcbook.job import BASIS, JOB_NUMBER
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
 from calcbook.run import Filling, Runner, carries
+from calcbook.wording import counted
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -109,7 +111,7 @@ def _job_of(target: Target, argument: str) -> Job:
         raise JobError(
             f"'{argument}' is not a notebook of this job",
             where=str(job.folder),
-            hint=f"it has: {', '.join(job.workbooks)}",
+            hint=job.unlisted(stem) or f"it has: {', '.join(job.workbooks)}",
         )
     return job
 
@@ -123,8 +125,9 @@ def _attempt(wish: Wish, progress: Progress) -> None:
     record = job.record(notebook.stem, mark)
     before = {name: entry.value for name, entry in record.entries.items()}
     filling = Filling(notebook, mark, sets=wish.sets, record=record)
-    book, statement = Runner(job, progress).run(filling)
-    _refuse_carried(book, job, [*wish.sets, *assignments(wish.files)])
+    runner = Runner(job, progress)
+    book, statement = runner.run(filling)
+    _refuse_carried(runner, book, [*wish.sets, *assignments(wish.files)])
     rows = read_rows(wish.files, book)
     change = _everything(book)
     if wish.sets or rows:
@@ -146,16 +149,12 @@ def _attempt(wish: Wish, progress: Progress) -> None:
             print(f"not confirmed: {trouble}")
 
 
-def _refuse_carried(book: Workbook, job: Job, names: Sequence[str]) -> None:
+def _refuse_carried(runner: Runner, book: Workbook, names: Sequence[str]) -> None:
     origins = carries(book)
     for name in names:
-        workbook, _, source = origins.get(name, "").partition(".")
-        if workbook in job.workbooks:
-            raise InputError(
-                f"{name} is carried from {workbook}.{source}",
-                where=book.name,
-                hint=f"change it there: calcbook set {workbook} {source}=VALUE",
-            )
+        hint = owner_hint(runner, origins.get(name, ""))
+        if hint:
+            raise InputError(f"{name} is carried from {origins[name]}", where=book.name, hint=hint)
 
 
 def _entry(record: Record, name: str, text: str) -> EntryRecord:
@@ -241,9 +240,28 @@ def _tell(record: Record, change: Change, before: Mapping[str, str], wish: Wish)
     for name in wish.sets:
         value, old = change.entries[name].value, before.get(name)
         print(f"{name} = {value}" + (f"  (was {old})" if old not in (None, value) else ""))
-    for name, rows in change.rows.items():
-        print(f"{name}: {len(rows)} rows")
+    if wish.sets or wish.files:
+        for name, rows in change.rows.items():
+            print(f"{name}: {counted(len(rows), 'row')}")
+    else:
+        _list(change)
     if wish.initials is not None:
-        count = len(change.entries) + sum(map(len, change.rows.values()))
-        print(f"{count} confirmed by {wish.initials}")
+        count = sum(map(len, change.rows.values()))
+        every = (counted(len(change.entries), "entry"), counted(count, "row"))
+        told = [text for text in every if not text.startswith("0 ")]
+        print(f"{' and '.join(told) or 'nothing'} confirmed by {wish.initials}")
     print(f"written to {record.path.name}")
+
+
+def _list(change: Change) -> None:
+    """Print each entry and each row with its source, one to a line."""
+    for name, entry in change.entries.items():
+        print(f"{name} = {entry.value}{_in_brackets(entry.source)}")
+    for name, rows in change.rows.items():
+        for row in rows:
+            cells = ", ".join(f"{column} = {text}" for column, text in row.cells.items())
+            print(f"{name}, {row.key}: {cells}{_in_brackets(row.source)}")
+
+
+def _in_brackets(source: str) -> str:
+    return f"  ({source})" if source else ""

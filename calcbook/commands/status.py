@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 from calcbook.commands import review
 from calcbook.commands.common import Progress
 from calcbook.errors import CalcbookError
-from calcbook.job import Job
+from calcbook.job import BASIS, Job
 from calcbook.run import Runner
 from calcbook.wording import verdict
 
@@ -62,6 +62,8 @@ def _print(statement: Mapping[str, object], not_used: Sequence[str]) -> None:
     unconfirmed = review.unconfirmed(statement)
     if unconfirmed:
         print(f"  unconfirmed: {', '.join(unconfirmed)}")
+    if statement["workbook"] == BASIS and (empty := review.nothing_entered(statement)):
+        print(f"  nothing entered: {', '.join(empty)}")
     for text in review.stale(statement):
         print(f"  stale: {text}")
     if not_used:
