@@ -56,7 +56,7 @@ class ScheduleWriter:
             "sources": [r.source for r in rows],
             "fixed": item.fixed or bool(item.same_rows),
             "fallback": item.name in self.readings.fallbacks,
-            "stale": carried is not None and carried.taken is not None,
+            "stale": bool(item.origin) and carried is not None and carried.taken is not None,
             "from": {"workbook": workbook, "name": name} if dot else None,
             "columns": [self._column(c, item, keys) for c in bound.columns if not c.problem],
             "errors": [*(c.problem for c in bound.columns if c.problem), *bound.faults],

@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 from calcbook.standing import is_unconfirmed, unconfirmed_rows
-from calcbook.wording import amount
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
@@ -22,7 +21,12 @@ def initials(confirmed: str) -> str:
 
 
 def standing(item: Plain) -> str:
-    """Return whether a value stands confirmed, and by whom; '' where nothing is entered."""
+    """Return whether a value stands confirmed, and by whom.
+
+    Returns '' where nothing is entered, or what is entered is refused.
+    """
+    if item.get("problem"):
+        return ""
     if item.get("confirmed"):
         return f"confirmed {initials(item['confirmed'])}"
     if not is_unconfirmed(item):
@@ -37,6 +41,13 @@ def range_words(item: Plain) -> str:
     return f"range {item['range']}" if item.get("range") else ""
 
 
+def source_words(item: Plain) -> str:
+    """Return where a value comes from; that it is not said, for a value or an option."""
+    if item.get("source"):
+        return str(item["source"])
+    return "source not given" if item["kind"] in ("entry", "choice") else ""
+
+
 def origin_words(item: Plain) -> str:
     """Return where a value was brought forward from."""
     origin = item["from"]
@@ -48,17 +59,6 @@ def moved_words(item: Plain) -> str:
     """Return what a stale value was when it was taken and what it is now."""
     was = (item.get("taken") or {}).get("text")
     return f"moved on: was {was} when taken" if was else "moved on since it was taken"
-
-
-def compared(item: Plain) -> str:
-    """Return demand, limit and ratio of a check, ending before the verdict."""
-    if item["satisfied"] is None:
-        return ""
-    demand, limit = item["demand"], item["limit"]
-    if not demand.get("text"):
-        return ""
-    ratio = f", ratio {item['ratio_text']}" if item.get("ratio_text") else ""
-    return f"demand {amount(demand)}, limit {amount(limit)}{ratio}: "
 
 
 def rows_standing(item: Plain) -> Iterator[str]:

@@ -179,7 +179,9 @@ def _section(part: dict[str, Any], label: str, writer: Writer) -> list[Node]:
         skipped = {}
         blocks.append(writer.block(item))
         if item["kind"] == "schedule":
-            blocks += [writer.block(line) for line in governing(item)]
+            for heading, lines in governing(item):
+                blocks.append({"t": "row", "c": heading})
+                blocks += [writer.block(line) for line in lines]
     return blocks + _skipped(skipped)
 
 

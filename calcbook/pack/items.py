@@ -10,7 +10,7 @@ from calcbook.errors import PackError
 from calcbook.pack import nodes, schedules
 from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
 from calcbook.standing import is_unconfirmed
-from calcbook.wording import FROM_MEMORY, OUTSIDE, amount, option_words
+from calcbook.wording import FROM_MEMORY, OUTSIDE, amount, compared, governs, option_words
 from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
@@ -176,6 +176,7 @@ class Writer:
             "lines": [[symbol(item["name"]), READ, OUTSIDE[item["outside"]]]],
             "table": schedules.lookup_table(item),
             "after": [],
+            "legend": [],
             "notes": [[words(item["source"])]] if told else [],
         }
 
@@ -190,20 +191,31 @@ class Writer:
             lines.append([strong("Stale: "), "the rows have moved on since they were taken"])
         return {
             "t": "schedule",
-            "lines": [*lines, *schedules.legend(item)],
+            "lines": lines,
             "table": schedules.table(item),
             "after": schedules.remarks(item),
+            "legend": schedules.legend(item),
             "notes": notes,
         }
 
 
-def governing(item: Item) -> list[Item]:
-    """Return the lines of a schedule's governing row as items to be printed under it."""
-    row = item.get("governing")
-    if not row:
+def governing(item: Item) -> list[tuple[list[Node], list[Item]]]:
+    """Return a schedule's governing rows: what each governs, and its lines to be printed."""
+    worked = item.get("governing")
+    if not worked:
         return []
     used = {column["name"]: column.get("used_by", ()) for column in item["columns"]}
-    return [{**line, "used_by": used.get(line["name"], ())} for line in row["lines"]]
+    rows: dict[str, list[Item]] = {}
+    for line in worked["lines"]:
+        told = {**line, "used_by": used.get(line["name"], ())}
+        rows.setdefault(line.get("row", worked["row"]), []).append(told)
+    return [(_row_heading(item, row), lines) for row, lines in rows.items()]
+
+
+def _row_heading(item: Item, row: str) -> list[Node]:
+    """Return 'Row WX1+, largest M_b, smallest N_b'."""
+    for_what = [[f"{which} ", symbol(column)] for which, column in governs(item, row)]
+    return joined([[strong(f"Row {words(row)}")], *for_what], ", ")
 
 
 def equation(item: Item) -> dict[str, Any]:
@@ -239,14 +251,8 @@ def equation(item: Item) -> dict[str, Any]:
 
 def verdict(item: Item) -> list[Node]:
     """Return 'demand 1.908, limit 2.400 kPa, ratio 0.80: satisfied'."""
-    demand, limit = item.get("demand") or {}, item.get("limit") or {}
-    if not demand.get("text") and not limit.get("text"):
-        return [strong(judged(item))]
-    shown = amount(demand)
-    if demand.get("text") and limit.get("text") and demand.get("unit") == limit.get("unit"):
-        shown = amount({**demand, "unit": ""})
-    ratio = f", ratio {item['ratio_text']}" if item.get("ratio_text") else ""
-    return [f"demand {shown}, limit {amount(limit)}{ratio}: ", strong(judged(item))]
+    sides = compared(item)
+    return [f"{sides}: ", strong(judged(item))] if sides else [strong(judged(item))]
 
 
 def confirmation(item: Item) -> list[list[Node]]:

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from calcbook import formula, typeset, units
 from calcbook.pack import nodes
 from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, words
-from calcbook.wording import amount
+from calcbook.wording import amount, cases_told
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -54,22 +54,30 @@ def lookup_table(item: Item) -> dict[str, Any]:
 
 
 def legend(item: Item) -> list[list[Node]]:
-    """Return what each column is; computed ones with formula unless a row is worked in full."""
-    worked = {line.get("name") for line in (item.get("governing") or {}).get("lines", ())}
-    told: list[list[Node]] = []
+    """Return what each column is, in their order; a formula stands on a line of its own.
+
+    A column worked in full under the schedule has its formula there.
+    """
+    worked = {
+        (line.get("name"), line.get("formula"))
+        for line in (item.get("governing") or {}).get("lines", ())
+    }
     lines: list[list[Node]] = []
+    told: list[list[Node]] = []
     for column in item["columns"]:
         clause = f" ({words(column['clause'])})" if column.get("clause") else ""
         meaning = phrase(column.get("meaning", ""))
+        formulas = {case["formula"] for case in column.get("cases") or ()} or {column["formula"]}
         if not column.get("applies", True):
-            lines.append([symbol(column["name"]), " ", *meaning, ": not applied"])
-        elif column["role"] == "computed" and column["name"] not in worked:
-            lines += _definitions(column, [*meaning, clause])
+            told.append([symbol(column["name"]), " ", *meaning, ": not applied"])
+        elif column["role"] == "computed" and {(column["name"], f) for f in formulas} - worked:
+            lines += [joined(told, "; "), *_definitions(column, [*meaning, clause])]
+            told = []
         elif column["role"] not in WORDY:
             role = {"entered": ", entered", "carried": ", brought forward"}.get(column["role"], "")
             role = "" if item.get("fixed") else role
             told.append([symbol(column["name"]), " ", *meaning, f"{role}{clause}"])
-    return [line for line in (joined(told, "; "), *lines) if line]
+    return [line for line in (*lines, joined(told, "; ")) if line]
 
 
 def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:
@@ -77,14 +85,16 @@ def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:
     if not column.get("cases"):
         return [[_definition(column["name"], column["formula"]), ", ", *meaning]]
     lines: list[list[Node]] = [[symbol(column["name"]), " ", *meaning, ", by case:"]]
-    for case in column["cases"]:
-        line: list[Node] = [_definition(column["name"], case["formula"])]
-        if case.get("when"):
-            condition = formula.parse(case["when"])
-            when = (typeset.expression(condition, output) for output in ("typst", "plain"))
-            line += [" where ", nodes.math(*when)]
-        lines.append(line)
+    for text, conditions in cases_told(column):
+        when = [[_condition(test)] if test else ["otherwise"] for test in conditions]
+        where = " where " if any(conditions) else " "
+        lines.append([_definition(column["name"], text), where, *joined(when, " or ")])
     return lines
+
+
+def _condition(text: str) -> Node:
+    tree = formula.parse(text)
+    return nodes.math(typeset.expression(tree, "typst"), typeset.expression(tree, "plain"))
 
 
 def _definition(name: str, text: str) -> Node:
@@ -163,8 +173,8 @@ def _column(item: Item, column: Column) -> Column:
     cells = [
         _cell(text or ("" if p is None else "n/a"), unit) for text, p in _pairs(column, problems)
     ]
-    for cell in cells:
-        cell["typed"] = entered
+    for cell, text, typed in zip(cells, column["texts"], column.get("typed") or (), strict=False):
+        cell["typed"] = entered and _as_typed(text, typed, unit)
     total = column.get("total")
     number = column["role"] not in WORDY and all(
         c["digits"] is not None or c["void"] for c in cells
@@ -175,6 +185,11 @@ def _column(item: Item, column: Column) -> Column:
         head = [phrase(column.get("meaning") or column["name"])]
     sum_cell = _cell(total.get("text") or "n/a", unit) if total else None
     return _laid_out(head, cells, sum_cell, number=number)
+
+
+def _as_typed(text: str, typed: str, unit: str) -> bool:
+    """Whether a cell shows what was typed, and not the same quantity in another unit."""
+    return text == typed.strip().removesuffix(unit).strip()
 
 
 def _pairs(column: Column, problems: Sequence[str | None]) -> list[tuple[str | None, str | None]]:

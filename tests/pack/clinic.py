@@ -77,6 +77,7 @@ def column(name: str, meaning: str, unit: str, role: str, texts: list[str], **mo
         "name": name, "number": "", "meaning": meaning, "unit": unit, "role": role, "formula": "",
         "cases": [], "clause": "", "note": "", "memory": False, "applies": True, "texts": texts,
         "si": [None] * len(texts), "total": None, "result": False, "problem": None, "used_by": [],
+        "typed": [f"{text} {unit}".strip() for text in texts] if role == "entered" else texts,
     }  # fmt: skip
     return given | more
 
