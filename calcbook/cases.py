@@ -17,6 +17,7 @@ from calcbook.errors import CalcbookError, InputError
 from calcbook.items import Carry, Check, Choice, Entry, Text
 from calcbook.reading import SLACK, read_value
 from calcbook.verdict import STRICT, margin
+from calcbook.workbook import first_problem
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -44,11 +45,15 @@ class Cases:
         all others as single values; columns of schedules as arrays (rows, 1).
     rows
         The number of rows of each set of rows.
+    idle
+        Why an input has no value that does not apply with the values on record; it may not apply
+        in any of the cases either.
     """
 
     count: int
     values: Mapping[str, Value]
     rows: Mapping[str, int]
+    idle: Mapping[str, str]
 
 
 def entries(book: Workbook) -> dict[str, Entry | Choice | Text | Carry]:
@@ -88,8 +93,11 @@ def read(book: Workbook, columns: Mapping[str, Sequence[str]]) -> Cases:
             raise InputError(f"{name} is the same for every case", hint=f"use --set {name}=VALUE",
                              where=book.name)  # fmt: skip
         program_values[name] = _column(known[name], texts)
-    _refuse_missing(book, columns)
-    return Cases(counts.pop(), program_values, book.readings.rows)
+    idle = _refuse_missing(book, columns)
+    for name in idle:
+        words = book.program.scope[name].form == "text"
+        program_values[name] = "" if words else np.float64(np.nan)
+    return Cases(counts.pop(), program_values, book.readings.rows, idle)
 
 
 def compute(
@@ -152,12 +160,18 @@ def results(
     Raises
     ------
     InputError
-        For the first case in which a result that applies has no value.
+        For the first case in which a result that applies has no value, or an input that has none
+        applies.
     """
+    values = {**cases.values, **found}
+    for name, reason in cases.idle.items():
+        places = np.flatnonzero(_applies(program, book.scope[name], values, cases.count))
+        if places.size:
+            raise InputError(_reason(name, reason), where=f"case {places[0] + 1}")
     given = {}
     for bound in result_lines(book):
         array = np.array(np.broadcast_to(np.asarray(found[bound.name], float), cases.count))
-        applies = _applies(program, bound, {**cases.values, **found}, cases.count)
+        applies = _applies(program, bound, values, cases.count)
         bad = np.flatnonzero(applies & ~np.isfinite(array))
         if bad.size:
             raise _no_value(book, bound, cases, int(bad[0]))
@@ -166,13 +180,15 @@ def results(
     return given
 
 
-def failing(program: Program, cases: Cases, found: Mapping[str, Value]) -> dict[str, np.ndarray]:
-    """Return for each check that fails somewhere the places (from 0) of the cases it fails in.
+def failing(
+    program: Program, cases: Cases, found: Mapping[str, Value]
+) -> list[tuple[Bound, np.ndarray]]:
+    """Return each check that fails somewhere, with the places (from 0) of the cases it fails in.
 
-    The key is the check's formula. A check that cannot be decided fails.
+    A check that cannot be decided fails.
     """
     values = {**cases.values, **found}
-    failed = {}
+    failed = []
     for step in program.steps():
         if not isinstance(step.bound.item, Check):
             continue
@@ -185,7 +201,7 @@ def failing(program: Program, cases: Cases, found: Mapping[str, Value]) -> dict[
         applies = _applies(program, step.bound, values, cases.count)
         places = np.flatnonzero(applies & ~every)
         if places.size:
-            failed[step.bound.item.formula] = places
+            failed.append((step.bound, places))
     return failed
 
 
@@ -199,14 +215,23 @@ def _fixed(value: Value) -> Value:
     return np.float64(value) if isinstance(value, float) else value
 
 
-def _refuse_missing(book: Workbook, columns: Mapping[str, Sequence[str]]) -> None:
-    found = book.readings
+def _refuse_missing(book: Workbook, columns: Mapping[str, Sequence[str]]) -> dict[str, str]:
+    """Refuse an input without a value, unless it does not apply; returns these with the reason."""
+    idle = {}
     for name in book.program.inputs:
-        reasons = [found.problems.get(name, ""), *found.row_problems.get(name, ())]
-        reason = next((r for r in reasons if r), "")
-        if reason and name not in columns:
-            raise InputError(f"{name} {reason}" if "\n" not in reason else reason,
-                             where=book.name)  # fmt: skip
+        reason = first_problem(book, [name])
+        if not reason or name in columns:
+            continue
+        bound = book.scope[name]
+        if bound.schedule is not None or book.results.applies.get(bound.number, True):
+            raise InputError(_reason(name, reason), where=book.name)
+        idle[name] = reason
+    return idle
+
+
+def _reason(name: str, reason: str) -> str:
+    said = "\n" in reason or reason.startswith(f"{name}:")
+    return reason if said else f"{name} {reason}"
 
 
 def _column(item: Item, texts: Sequence[str]) -> np.ndarray:

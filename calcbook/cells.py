@@ -39,14 +39,6 @@ def run_cell(path: Path, count: int, source: str, space: dict[str, object]) -> N
         What the cell itself raised, with the cell in front.
     """
     place = f"<{path.name} cell {count}>"
-    for line in source.splitlines():
-        if line.lstrip().startswith(("%", "!")):
-            raise JobError(
-                "notebook commands do not run outside Jupyter",
-                text=line,
-                where=f"{path.name}, cell {count}",
-                hint="take this line out, or write it in Python",
-            )
     try:
         with contextlib.redirect_stdout(io.StringIO()):
             exec(compile(source, place, "exec"), space)  # noqa: S102  the notebook is the program
@@ -55,11 +47,31 @@ def run_cell(path: Path, count: int, source: str, space: dict[str, object]) -> N
     except CalcbookError as error:
         raise error.at(f"{path.name}, cell {count}") from None
     except (Exception, SystemExit) as error:
+        if isinstance(error, SyntaxError) and error.filename == place:
+            _refuse_command(error, path, count, source)
         raise JobError(
             f"the cell stopped: {type(error).__name__}: {error}",
             where=f"{path.name}, cell {count}",
             text=_failing_line(error, place, source),
         ) from error
+
+
+def _refuse_command(error: SyntaxError, path: Path, count: int, source: str) -> None:
+    """Refuse a notebook command, which is what a cell that is no Python stops at or begins with.
+
+    The commands of a whole cell may put the error anywhere below.
+    """
+    lines = source.splitlines()
+    begins = next((line for line in lines if line.strip()), "")
+    stops = lines[error.lineno - 1] if error.lineno and error.lineno <= len(lines) else ""
+    for line in (stops, begins):
+        if line.lstrip().startswith(("%", "!")):
+            raise JobError(
+                "notebook commands do not run outside Jupyter",
+                text=line,
+                where=f"{path.name}, cell {count}",
+                hint="take this line out, or write it in Python",
+            ) from error
 
 
 def _failing_line(error: BaseException, place: str, source: str) -> str:

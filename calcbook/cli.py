@@ -31,7 +31,8 @@ Argument = tuple[str, dict[str, Any]]
 
 _WORKBOOK: Argument = ("workbook", {
     "metavar": "WORKBOOK[:MARK]",
-    "help": "a name (the job's copy inside a job, else the template) or a notebook's path",
+    "help": "a name (the job's copy inside a job, else the template) or a notebook's path; "
+            "MARK is one of several fillings, named as on the drawings: floor-beam:B1",
 })  # fmt: skip
 _ROWS: Argument = ("--rows", {
     "metavar": "SCHEDULE=FILE.csv", "action": "append", "default": [],
@@ -48,6 +49,7 @@ class Command:
     function: str
     summary: str
     arguments: tuple[Argument, ...]
+    passes_on: str = ""  # the program that gets the words behind '--'
 
     def load(self) -> Callable[[argparse.Namespace], int]:
         """Import the function that does it."""
@@ -65,7 +67,7 @@ COMMANDS = {
                     "help": "a new folder (default: ./marrowick-clinic)"}),
     )),
     "start": Command("jobs:start", "start a new job in a new folder", (_FOLDER,)),
-    "open": Command("jobs:open_job", "open a job in JupyterLab", (_FOLDER,)),
+    "open": Command("jobs:open_job", "open a job in JupyterLab", (_FOLDER,), "JupyterLab"),
     "status": Command(
         "status:status", "show checks, and what is unconfirmed, missing or stale", (_FOLDER,)),
     "describe": Command(
@@ -75,6 +77,8 @@ COMMANDS = {
         _WORKBOOK,
         ("values", {"metavar": "NAME=VALUE", "nargs": "*", "help": "an entry: V='70 m/s'"}),
         _ROWS,
+        ("--source", {"metavar": "TEXT",
+                      "help": "where every value and row that is set comes from"}),
         ("--confirm", {"metavar": "INITIALS",
                        "help": "confirm what is set; with nothing set, the whole workbook"}),
     )),
@@ -90,14 +94,15 @@ COMMANDS = {
     "pack": Command("jobs:pack", "make the calculation package of a job, one PDF", (
         _FOLDER,
         ("--output", {"metavar": "FILE", "type": Path,
-                      "help": "where to (default: FOLDER/JOB-NUMBER.pdf)"}),
+                      "help": "where to (default: FOLDER/NUMBER-REVISION.pdf)"}),
     )),
 }  # fmt: skip
 
 _EXIT_STATUS = """exit status:
   0  done
-  1  done, and a check of the calculation is not satisfied
-  2  not done, or something could not be computed; a message says what"""
+  1  done, and a check is not satisfied; after demo and pack also: an item has no value
+  2  refused, and nothing was written; after run and status also: printed, and something
+     in it was not accepted or has no value"""
 
 
 class _Parser(argparse.ArgumentParser):
@@ -118,8 +123,9 @@ def main(argv: Sequence[str] | None = None) -> int:
     Returns
     -------
     int
-        The exit status: 0 done; 1 done, and a check is not satisfied; 2 not done, with one
-        message on standard error; 130 interrupted.
+        The exit status: 0 done; 1 done, and a check is not satisfied (a package also: an item
+        has no value); 2 refused, with one message on standard error, or printed by ``run`` and
+        ``status`` with something that was not accepted; 130 interrupted.
     """
     words = list(sys.argv[1:] if argv is None else argv)
     _never_stop_at_a_sign()
@@ -146,10 +152,14 @@ def _do(words: Sequence[str]) -> int:
         print(f"calcbook {metadata.version('calcbook')}")
         return 0
     command, parser = _command(words[0])
+    own, passed = list(words[1:]), []
+    if command.passes_on and "--" in own:
+        own, passed = own[: own.index("--")], own[own.index("--") + 1 :]
     try:
-        arguments, rest = parser.parse_known_intermixed_args(words[1:])
+        arguments, rest = parser.parse_known_intermixed_args(own)
     except SystemExit:  # help was asked for and printed
         return 0
+    arguments.passed = passed
     if rest:
         options = [name for name, _ in command.arguments if name.startswith("--")]
         _refuse_rest(rest[0], parser, options)
@@ -165,8 +175,11 @@ def _command(word: str) -> tuple[Command, _Parser]:
             or f"there are: {', '.join(COMMANDS)}",
         )
     command = COMMANDS[word]
+    about = f"{command.summary[0].upper()}{command.summary[1:]}."
+    if command.passes_on:
+        about += f" Options behind '--' are passed on to {command.passes_on}."
     parser = _Parser(
-        prog=f"calcbook {word}", description=f"{command.summary[0].upper()}{command.summary[1:]}.",
+        prog=f"calcbook {word}", description=about,
         epilog=_EXIT_STATUS, allow_abbrev=False,
         formatter_class=argparse.RawDescriptionHelpFormatter,
     )  # fmt: skip
@@ -210,8 +223,8 @@ def _unexpected(error: Exception) -> str:
     text = " ".join(str(error).split())
     return (
         f"stopped unexpectedly: {type(error).__name__}: {text}\n"
-        f"nothing was written; please report this line (calcbook {metadata.version('calcbook')}"
-        f"{place}) with the command you typed"
+        "look at the job's folder before going on; please report this line "
+        f"(calcbook {metadata.version('calcbook')}{place}) with the command you typed"
     )
 
 

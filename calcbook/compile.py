@@ -42,6 +42,9 @@ if TYPE_CHECKING:
 
 _OR, _AND, _NOT, _COMPARE, _SUM, _PRODUCT, _MINUS, _POWER, _ATOM = range(9)
 _LEVEL = {"+": _SUM, "-": _SUM, "*": _PRODUCT, "/": _PRODUCT, "**": _POWER}
+#: By what part of itself a threshold gives way, and to which side: x >= 10 holds a little below.
+SLACK = 1e-9
+_TOWARD = {">=": 1.0, "<": 1.0, "<=": -1.0, ">": -1.0}
 _GATHERS = {"sum", "min", "max"}
 _WIDE_CASES = 64
 
@@ -194,15 +197,28 @@ class _Writer:
         ends = [node.first, *(part for _, part in node.rest)]
         signs = [op for op, _ in node.rest]
         pairs: list[_Source] = []
-        chain = _inside(self.side(ends[0], ends[1]), _SUM)
         for op, left, right in zip(signs, ends, ends[1:], strict=False):
-            one, other = self.side(left, right), self.side(right, left)
-            chain += f" {op} {_inside(other, _SUM)}"
+            one = self.threshold(left, right, op, 1.0)
+            other = self.threshold(right, left, op, -1.0)
             text = f"{_inside(one, _SUM)} {op} {_inside(other, _SUM)}"
             pairs.append(_Source(text, _COMPARE, one.column or other.column))
-        if len(pairs) > 1 and (self.array or any(pair.column for pair in pairs)):
-            return self.logic("and", pairs)
-        return _Source(chain, _COMPARE, pairs[0].column)
+        return pairs[0] if len(pairs) == 1 else self.logic("and", pairs)
+
+    def threshold(self, node: Node, other: Node, op: str, side: float) -> _Source:
+        """Write one side; a stated threshold gives way by the last bits of a float.
+
+        10 deg brought forward, or computed from a rise, is at '10 deg' and neither side of it.
+        """
+        source = self.side(node, other)
+        quantity = node.operand if isinstance(node, Negative) else node
+        if op not in _TOWARD or not isinstance(quantity, (Number, Quoted)):
+            return source
+        try:
+            value = float(source.text)
+        except ValueError:
+            return source  # the option of a choice
+        value += side * _TOWARD[op] * SLACK * abs(value)
+        return _Source(repr(value), _ATOM if value >= 0 else _MINUS, column=False)
 
     def side(self, node: Node, other: Node) -> _Source:
         if isinstance(node, Quoted) and isinstance(other, Name):

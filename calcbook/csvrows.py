@@ -14,6 +14,7 @@ from typing import TYPE_CHECKING
 
 from calcbook.diskfile import in_plain_words
 from calcbook.errors import InputError, near_match
+from calcbook.quantities import comma_hint
 from calcbook.recordform import RowRecord
 
 if TYPE_CHECKING:
@@ -22,7 +23,7 @@ if TYPE_CHECKING:
 
 _HEADER = re.compile(r"(?P<name>.*?\S)\s*(?:\((?P<round>[^()]*)\)|\[(?P<square>[^\[\]]*)\])")
 _BARE = re.compile(r"[-+]?(?:\d+\.?\d*|\.\d+)(?:[eE][-+]?\d+)?")
-_DECIMAL_COMMA = re.compile(r"[-+]?\d+,\d+(?:[eE][-+]?\d+)?(?:\s*[^\s\d,]\S*)?")
+_WITH_COMMA = re.compile(r"[-+]?\d+,\d+(?:[eE][-+]?\d+)?(?:\s*[^\s\d,]\S*)?")
 _SOURCE = "source"
 _UNIT_HINT = "put the unit into the header, as in 'z (m)', or into each cell"
 
@@ -33,6 +34,10 @@ class Header:
 
     name: str
     unit: str
+
+    def __str__(self) -> str:
+        """Return the header as it is written."""
+        return f"{self.name} ({self.unit})" if self.unit else self.name
 
 
 @dataclass(frozen=True)
@@ -45,6 +50,23 @@ class CsvTable:
     lines: tuple[int, ...]
 
 
+@dataclass(frozen=True)
+class CaseTable:
+    """A CSV file with one case per row.
+
+    ``given`` holds each column as it stands in the file, ``entries`` the same cells by the name of
+    their entry, with the unit of the header behind bare numbers.
+    """
+
+    headers: tuple[Header, ...]
+    given: tuple[Sequence[str], ...]
+    entries: dict[str, Sequence[str]]
+
+    def __len__(self) -> int:
+        """Return the number of cases."""
+        return len(self.given[0])
+
+
 def read_table(path: Path) -> CsvTable:
     """Read rows whose first column is their key; units of headers are put into the cells.
 
@@ -52,7 +74,7 @@ def read_table(path: Path) -> CsvTable:
     ------
     InputError
         No file, not UTF-8, an empty file, an empty or repeated header, a ragged row, a row
-        without a key or with a key used before, a decimal comma.
+        without a key or with a key used before, a comma in a number.
     """
     headers, rows, lines = _read(path)
     seen: dict[str, int] = {}
@@ -112,7 +134,7 @@ def as_rows(table: CsvTable, columns: Mapping[str, bool], where: str) -> list[Ro
     ]
 
 
-def read_cases(path: Path, names: Mapping[str, bool]) -> list[dict[str, str]]:
+def read_cases(path: Path, names: Mapping[str, bool]) -> CaseTable:
     """Read one case per row; the columns are entries, none of them a key.
 
     Parameters
@@ -128,10 +150,10 @@ def read_cases(path: Path, names: Mapping[str, bool]) -> list[dict[str, str]]:
         As `read_table`, an unknown entry, an empty cell, a number without the unit it needs.
     """
     headers, rows, lines = _read(path)
-    found = [header.name for header in headers]
-    _check_known(path.name, found, names)
-    columns = []
-    for header, cells in zip(headers, zip(*rows, strict=True), strict=True):
+    _check_known(path.name, (header.name for header in headers), names)
+    given = tuple(zip(*rows, strict=True))
+    entries = {}
+    for header, cells in zip(headers, given, strict=True):
         if "" in cells:
             line = lines[cells.index("")]
             hint = "write the value, or leave the whole column out to keep the value on record"
@@ -139,8 +161,8 @@ def read_cases(path: Path, names: Mapping[str, bool]) -> list[dict[str, str]]:
         full = _with_unit(cells, header.unit)
         if names[header.name] and not header.unit:
             _check_units(path.name, header.name, full, lines)
-        columns.append(full)
-    return [dict(zip(found, case, strict=True)) for case in zip(*columns, strict=True)]
+        entries[header.name] = full
+    return CaseTable(headers, given, entries)
 
 
 def _read(path: Path) -> tuple[tuple[Header, ...], list[list[str]], list[int]]:
@@ -172,6 +194,8 @@ def _read(path: Path) -> tuple[tuple[Header, ...], list[list[str]], list[int]]:
 
 
 def _text(path: Path) -> str:
+    if path.is_dir():
+        raise InputError(f"'{path}' is a folder", hint="name a CSV file, for example levels.csv")
     with in_plain_words(path, InputError):
         data = path.read_bytes()
     hint = "save it from the spreadsheet as 'CSV UTF-8'"
@@ -218,16 +242,17 @@ def _check_shape(
 ) -> None:
     for row, line in zip(rows, lines, strict=True):
         if len(row) != len(headers):
-            what = f"the row has {len(row)} cells and there are {len(headers)} headers"
+            what = f"the row has not as many cells ({len(row)}) as there are headers "
+            what += f"({len(headers)})"
             hint = "fill the row up, with empty cells where there is nothing"
             if len(row) > len(headers) and delimiter == ",":
                 hint = "write numbers with a decimal point (1.5), text with commas in quotes"
             raise _error(name, what, line, headers[min(len(row), len(headers)) - 1].name, hint)
     for header, cells in zip(headers, zip(*rows, strict=True), strict=True):
         for cell, line in zip(cells, lines, strict=True):
-            if "," in cell and _DECIMAL_COMMA.fullmatch(cell):
-                hint = f"write it with a decimal point: {cell.replace(',', '.')}"
-                raise _error(name, f"'{cell}' has a decimal comma", line, header.name, hint)
+            if "," in cell and _WITH_COMMA.fullmatch(cell):
+                what = f"there is a comma in the number '{cell}'"
+                raise _error(name, what, line, header.name, comma_hint(cell))
 
 
 def _with_unit(cells: Sequence[str], unit: str) -> Sequence[str]:

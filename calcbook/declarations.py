@@ -234,7 +234,7 @@ class Declarations:
         A clause with cases becomes a line with cases.
         """
         if codes and self.code.name not in codes:
-            return Handle(renamed.get(subject, subject))
+            return Handle(subject)
 
         def build() -> Line:
             clause = self.code.clause(subject)
@@ -256,4 +256,9 @@ class Declarations:
                 memory=clause.from_memory,
             )
 
-        return self._guarded(build, renamed.get(subject, subject), subject)
+        return self._guarded(build, self._symbol(subject, renamed), subject)
+
+    def _symbol(self, subject: str, renamed: Mapping[str, str]) -> str:
+        """Return the symbol a clause gives here, for one that cannot be accepted as well."""
+        known = self.code.clause(subject).name if self.code.has(subject) else ""
+        return renamed.get(known, known) or subject

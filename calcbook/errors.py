@@ -157,6 +157,11 @@ class UsageError(CalcbookError, ValueError):
 
 
 def near_match(name: str, known: Iterable[str]) -> str:
-    """Return ``did you mean 'x'?`` for the nearest of the known names, or nothing."""
-    found = difflib.get_close_matches(name, list(known), n=1, cutoff=0.6)
+    """Return ``did you mean 'x'?`` for the nearest of the known names, or nothing.
+
+    A name that differs in capitals only is nearer than any other.
+    """
+    known = list(known)
+    alike = [candidate for candidate in known if candidate.casefold() == name.casefold()]
+    found = alike or difflib.get_close_matches(name, known, n=1, cutoff=0.6)
     return f"did you mean '{found[0]}'?" if found else ""

@@ -7,6 +7,7 @@ import json
 from typing import TYPE_CHECKING, Any
 
 from calcbook.items import Check, Line, Schedule, TableItem
+from calcbook.shown import twelve
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -46,8 +47,11 @@ def _carried(item: Mapping[str, Any] | None) -> object:
         return None
     value = item.get("value")
     if isinstance(value, dict):
-        return [value.get("si"), value.get("unit")]
-    columns = [[c.get("name"), c.get("si"), c.get("texts")] for c in item.get("columns", ())]
+        return [twelve(value.get("si")), value.get("unit")]
+    columns = [
+        [c.get("name"), [twelve(si) for si in c.get("si") or ()], c.get("texts")]
+        for c in item.get("columns", ())
+    ]
     return [item.get("option"), item.get("text"), item.get("rows"), columns]
 
 
@@ -74,7 +78,7 @@ def item_digest(item: Mapping[str, Any]) -> str:
     value: Mapping[str, Any] = item.get("value") or {}
     columns: Sequence[Mapping[str, Any]] = item.get("columns") or ()
     basis = [
-        value.get("si"),
+        twelve(value.get("si")),
         value.get("unit"),
         item.get("option"),
         item.get("text"),
@@ -84,7 +88,7 @@ def item_digest(item: Mapping[str, Any]) -> str:
             [
                 c["name"],
                 c["unit"],
-                c["si"],
+                [twelve(si) for si in c["si"]],
                 c["texts"] if c["si"] == [None] * len(c["texts"]) else 0,
             ]
             for c in columns

@@ -19,12 +19,12 @@ from calcbook.tomltext import TomlText
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
-__all__ = ["Job", "template_folder", "templates"]
+__all__ = ["BASIS", "JOB_NUMBER", "Job", "find_notebook", "template_folder", "templates"]
 
 FORMAT = 1
 _FILE = "job.toml"
 _ENVIRONMENT = "CALCBOOK_JOB"
-_BASIS, _NUMBER = "design-basis", "job_number"
+BASIS, JOB_NUMBER = "design-basis", "job_number"  # where the job's own data are entered
 _LIST_HINT = 'list the notebooks in order: workbooks = ["design-basis", "wind-pressure"]'
 _START_HINT = "start a job with: calcbook start FOLDER"
 
@@ -61,7 +61,7 @@ class Job:
                 raise error.at(_ENVIRONMENT) from None
         here = (start or Path.cwd()).resolve()
         for folder in (here, *here.parents):
-            if (folder / _FILE).is_file():
+            if _is_job(folder):
                 return cls.load(folder)
         return None
 
@@ -121,6 +121,12 @@ class Job:
             raise JobError(f"this job has no workbook '{workbook}'", hint=hint, where=_FILE)
         return self.folder / f"{workbook}.ipynb"
 
+    def unlisted(self, workbook: str) -> str:
+        """Return what to do about a notebook of the folder that is not in the list, or ''."""
+        if workbook in self.workbooks or not (self.folder / f"{workbook}.ipynb").is_file():
+            return ""
+        return f"add '{workbook}' to the list of workbooks in {_FILE}"
+
     def record_path(self, workbook: str, mark: str | None = None) -> Path:
         """Return the path of the record of a workbook and mark."""
         return record_path(self.folder, workbook, mark)
@@ -149,10 +155,23 @@ class Job:
             self.record_path(workbook, mark)
         return tuple(sorted(found, key=_natural))
 
+    def fillings(self) -> list[tuple[str, str | None]]:
+        """Return every workbook with each of its marks, in the order of the pack.
+
+        A workbook with marks has a filling without one only where that has a record.
+        """
+        found: list[tuple[str, str | None]] = []
+        for workbook in self.workbooks:
+            marks = self.marks(workbook)
+            if not marks or self.record_path(workbook).exists():
+                found.append((workbook, None))
+            found += [(workbook, mark) for mark in marks]
+        return found
+
     @property
     def number(self) -> str:
         """The job number: an entry of the design basis; '' when it has none."""
-        entry = self.record(_BASIS).entries.get(_NUMBER)
+        entry = self.record(BASIS).entries.get(JOB_NUMBER)
         return entry.value if entry else ""
 
     def claim(self, workbook: str, notebook: Path) -> None:
@@ -177,6 +196,29 @@ class Job:
                 )
 
 
+def find_notebook(name: str, job: Job | None) -> Path:
+    """Return the notebook of a WORKBOOK argument: a path, the job's copy, else the template.
+
+    Raises JobError with the nearest name when there is none, or when the job's folder has it and
+    its list does not.
+    """
+    if name.endswith(".ipynb"):
+        path = Path(name)
+        if not path.is_file():
+            raise JobError(f"there is no notebook '{name}'")
+        return path
+    if job is not None and name in job.workbooks:
+        return job.notebook(name)
+    known = templates()
+    hint = job.unlisted(name) if job is not None else ""
+    if name in known and not hint:
+        return known[name]
+    every = list(dict.fromkeys([*(job.workbooks if job is not None else ()), *known]))
+    what = f"the job does not list {name}.ipynb" if hint else f"there is no workbook '{name}'"
+    hint = hint or _job_below(Path(name)) or near_match(name, every)
+    raise JobError(what, hint=hint or f"there are: {', '.join(every)}")
+
+
 def template_folder() -> Path:
     """Return the folder of the template notebooks, in an installed package or a source tree.
 
@@ -195,6 +237,17 @@ def template_folder() -> Path:
 def templates() -> dict[str, Path]:
     """Return the template notebooks by name, in the order of the alphabet."""
     return {path.stem: path for path in sorted(template_folder().glob("*.ipynb"))}
+
+
+def _is_job(folder: Path) -> bool:
+    """Whether a folder is that of a job."""
+    return (folder / _FILE).is_file()
+
+
+def _job_below(path: Path) -> str:
+    """Return where to go when a job's folder is named with a workbook, or instead of one."""
+    folder = next((f for f in (path.parent, path) if f.name and _is_job(f)), None)
+    return f"go into the job's folder first: cd {folder}" if folder else ""
 
 
 def _read_workbooks(toml: TomlText) -> tuple[str, ...]:

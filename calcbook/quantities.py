@@ -18,7 +18,6 @@ from typing import NoReturn
 from calcbook.errors import QuantityError
 
 LONGEST_TEXT = 100
-EXAMPLE = "write a number and its unit, for example 3.5 kPa"
 FEET_EXAMPLE = "write feet and inches as 5 ft 6 in or 5'-6 1/2\""
 
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][+-]?[0-9]+)?")
@@ -40,6 +39,9 @@ _UNDERSCORES = re.compile(r"[+-]?[0-9.]*_[0-9_.]*")
 _VULGAR = re.compile(r"(?P<sign>[+-]?)(?:(?P<whole>[0-9]+) +)?(?P<part>[0-9]+/[0-9]+)")
 _POWER_OF_TEN = re.compile(
     " *[x*·\N{MULTIPLICATION SIGN}] *10 *(?:\\^|[*]{2})? *([+-]?[0-9]+|⁻?[⁰¹²³⁴-⁹]+)"
+)
+_SLOPE = re.compile(
+    r"(?P<rise>[0-9]+\.?[0-9]*|\.[0-9]+) *(?:%|(?::|/|in) *(?P<run>[0-9]+\.?[0-9]*|\.[0-9]+))"
 )
 _NOT_A_NUMBER = re.compile(r"[+-]? *(?:nan|inf(?:inity)?|∞)(?![A-Za-z])", re.IGNORECASE)
 _FRACTION_BAR = "\N{FRACTION SLASH}"
@@ -69,13 +71,15 @@ class Typed:
     start: int
 
 
-def read_typed(text: str) -> Typed:
+def read_typed(text: str, example: str = "3.5 kPa") -> Typed:
     """Split a typed quantity into its number and the text of its unit.
 
     Parameters
     ----------
     text
         For example ``3.5 kN/m2``, ``-0.18``, ``1.2e3 N``, ``5 %``, ``5 ft 6 in``, ``5'-6 1/2"``.
+    example
+        What a refusal gives as an example: a quantity of the kind that is wanted.
 
     Returns
     -------
@@ -87,32 +91,52 @@ def read_typed(text: str) -> Typed:
     QuantityError
         With what to type instead and the place of the offending part.
     """
-    text = _tidy(text)
+    text = _tidy(text, example)
     _refuse_lookalikes(text)
     feet = _read_feet_and_inches(text)
     if feet is not None:
         return feet
     match = _NUMBER.match(text)
     if match is None:
-        _refuse_start(text)
+        _refuse_start(text, example)
     end = match.end()
     if end < len(text) and not _UNIT_START.match(text, end):
-        _refuse_after(text, end)
+        _refuse_after(text, end, example)
     _refuse_power_of_ten(text, end)
     start = end + len(text[end:]) - len(text[end:].lstrip())
     return Typed(text, _finite(match.group(), text, end), text[start:], start)
 
 
-def _tidy(text: str) -> str:
+def refuse_slope(text: str) -> None:
+    """Refuse an angle typed as a slope (``1:4``, ``3/12``, ``25 %``), with its degrees."""
+    match = _SLOPE.fullmatch(text.strip()) if isinstance(text, str) else None
+    if match is None or not float(match["run"] or 1):
+        return
+    rise, run = float(match["rise"]), float(match["run"] or 100)
+    angle = format_number(math.degrees(math.atan2(rise, run)), 2)
+    raise QuantityError(
+        "a slope is typed where an angle is wanted",
+        hint=f"write degrees: a rise of {rise:g} on a run of {run:g} is {angle} deg",
+        text=text.strip(),
+        span=(0, len(text.strip())),
+    )
+
+
+def _in_full(example: str) -> str:
+    plain = _NUMBER.fullmatch(example)
+    return f"write a number{'' if plain else ' and its unit'}, for example {example}"
+
+
+def _tidy(text: str, example: str) -> str:
     if not isinstance(text, str):
-        raise QuantityError(f"{text!r} is not text", hint='write it in quotes, as in "3.5 kPa"')
+        raise QuantityError(f"{text!r} is not text", hint=f'write it in quotes, as in "{example}"')
     text = text.translate(_WIDE_SPACES).strip()
     if not text:
-        raise QuantityError("nothing is typed", hint=EXAMPLE)
+        raise QuantityError("nothing is typed", hint=_in_full(example))
     if len(text) > LONGEST_TEXT:
         raise QuantityError(
             f"the text is longer than {LONGEST_TEXT} characters",
-            hint=EXAMPLE,
+            hint=_in_full(example),
             text=f"{text[:60]!r}"[1:-1],
             span=(0, 1),
         )
@@ -120,7 +144,7 @@ def _tidy(text: str) -> str:
         if not character.isprintable():
             raise QuantityError(
                 f"there is an unprintable character at place {place + 1}",
-                hint=EXAMPLE,
+                hint=_in_full(example),
                 text=re.sub(r"[^ -~]", "?", text),
                 span=(place, place + 1),
             )
@@ -202,12 +226,12 @@ def _as_decimal(value: Fraction) -> str:
     return f"{float(value):.12g}"
 
 
-def _refuse_start(text: str) -> NoReturn:
+def _refuse_start(text: str, example: str) -> NoReturn:
     match = _NOT_A_NUMBER.match(text)
     if match:
         raise QuantityError(
             f"'{match.group()}' is not a value",
-            hint="write the value in figures, for example 3.5 kPa",
+            hint=f"write the value in figures, for example {example}",
             text=text,
             span=match.span(),
         )
@@ -223,17 +247,17 @@ def _refuse_start(text: str) -> NoReturn:
     number = _NUMBER.search(text)
     raise QuantityError(
         "this does not start with a number",
-        hint="write the number first, for example 3.5 kPa",
+        hint=f"write the number first, for example {example}",
         text=text,
         span=(0, number.start() if number and number.start() else len(text)),
     )
 
 
-def _refuse_after(text: str, end: int) -> NoReturn:
+def _refuse_after(text: str, end: int, example: str) -> NoReturn:
     """Refuse what follows a number and is neither a unit nor the end."""
     _refuse_commas(text)
     _refuse_power_of_ten(text, end)
-    _refuse_parted_number(text)
+    _refuse_parted_number(text, example)
     match = _VULGAR.match(text)
     if match and not re.fullmatch(".*/0+", match["part"]):
         value = int(match["whole"] or 0) + Fraction(match["part"])
@@ -244,10 +268,10 @@ def _refuse_after(text: str, end: int) -> NoReturn:
             span=match.span(),
         )
     what = "there are two points in the number" if text[end] == "." else "this cannot be read"
-    raise QuantityError(what, hint=EXAMPLE, text=text, span=(end, len(text)))
+    raise QuantityError(what, hint=_in_full(example), text=text, span=(end, len(text)))
 
 
-def _refuse_parted_number(text: str) -> None:
+def _refuse_parted_number(text: str, example: str) -> None:
     underscores = _UNDERSCORES.match(text)
     spaces = _SPACES.match(text)
     if underscores:
@@ -256,7 +280,7 @@ def _refuse_parted_number(text: str) -> None:
             "there is an underscore in the number", hint=hint, text=text, span=underscores.span()
         )
     if spaces:
-        hint = "write one number without spaces, for example 3.5 kPa"
+        hint = f"write one number without spaces, for example {example}"
         if _THOUSANDS.fullmatch(spaces.group()):
             hint = f"write {spaces.group().replace(' ', '')}{text[spaces.end() :]}"
         raise QuantityError(
@@ -266,20 +290,27 @@ def _refuse_parted_number(text: str) -> None:
 
 def _refuse_commas(text: str) -> None:
     match = _COMMAS.match(text)
+    if match is not None:
+        raise QuantityError(
+            "there is a comma in the number", hint=comma_hint(text), text=text, span=match.span()
+        )
+
+
+def comma_hint(text: str) -> str:
+    """Return what to write for a number with commas: both readings where there are two."""
+    match = _COMMAS.match(text)
     if match is None:
-        return
+        return ""
     number, rest = match.group(), text[match.end() :]
     plain = number.replace(",", "")
     pointed = number.replace(".", "").replace(",", ".")
     if re.fullmatch(r"[+-]?[1-9][0-9]{0,2},[0-9]{3}", number):
-        hint = f"write {plain}{rest} without the comma, or {pointed}{rest} with a point"
-    elif _THOUSANDS.fullmatch(number) and not number.lstrip("+-").startswith("0"):
-        hint = f"write {plain}{rest}"
-    elif re.fullmatch(r"[+-]?[0-9]*,[0-9]+|[+-]?[0-9]{1,3}(?:\.[0-9]{3})+,[0-9]+", number):
-        hint = f"write {pointed}{rest}, with a point"
-    else:
-        hint = "write one number with one point, for example 1.5 m"
-    raise QuantityError("there is a comma in the number", hint=hint, text=text, span=match.span())
+        return f"write {plain}{rest} without the comma, or {pointed}{rest} with a point"
+    if _THOUSANDS.fullmatch(number) and not number.lstrip("+-").startswith("0"):
+        return f"write {plain}{rest}"
+    if re.fullmatch(r"[+-]?[0-9]*,[0-9]+|[+-]?[0-9]{1,3}(?:\.[0-9]{3})+,[0-9]+", number):
+        return f"write {pointed}{rest}, with a point"
+    return "write one number with one point, for example 1.5 m"
 
 
 def _refuse_power_of_ten(text: str, end: int) -> None:

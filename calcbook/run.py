@@ -10,7 +10,6 @@ from __future__ import annotations
 import hashlib
 from contextvars import ContextVar
 from dataclasses import dataclass, field
-from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from calcbook import codes
@@ -19,18 +18,18 @@ from calcbook.errors import CalcbookError, CarryError, InputError, JobError, nea
 from calcbook.fingerprint import item_digest
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
-from calcbook.job import Job, templates
+from calcbook.job import BASIS, Job
 from calcbook.marks import gathered
 from calcbook.versions import software
 from calcbook.workbook import Workbook, first_problem
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
+    from pathlib import Path
 
     from calcbook.codes import CodeSet
     from calcbook.record import CarriedRecord, EntryRecord, Record, RowRecord
 
-BASIS = "design-basis"
 ALL_MARKS = "*"
 Plain = dict[str, Any]
 Part = tuple[str, str | list[str]]
@@ -56,12 +55,19 @@ class Runner:
         The job the workbooks belong to; None runs templates alone.
     progress
         Called with one line of text when a workbook starts.
+    forget_taken
+        Take every carried value as it is now, whatever was taken before: nothing is stale.
     """
 
     def __init__(
-        self, job: Job | None = None, progress: Callable[[str], None] | None = None
+        self,
+        job: Job | None = None,
+        progress: Callable[[str], None] | None = None,
+        *,
+        forget_taken: bool = False,
     ) -> None:
         self.job = job
+        self.forget_taken = forget_taken
         self.progress = progress or (lambda _text: None)
         self.books: dict[tuple[str, str | None], tuple[Workbook, Plain]] = {}
         self._running: list[str] = []
@@ -158,7 +164,7 @@ class Runner:
             typed.entries[name] = Given(text, "set for this run")
         for name, rows in filling.rows.items():
             typed.rows[name] = [GivenRow(r.key, r.cells, r.source) for r in rows]
-        taken = record.carried if record is not None else {}
+        taken = record.carried if record is not None and not self.forget_taken else {}
         typed.carried = lambda origin: self.carried(origin, taken)
         return typed
 
@@ -315,28 +321,6 @@ def all_items(statement: Mapping[str, Any]) -> list[Plain]:
 def find_item(statement: Mapping[str, Any], name: str) -> Plain | None:
     """Return the item of a name, or None."""
     return next((i for i in all_items(statement) if i["name"] == name), None)
-
-
-def find_notebook(name: str, job: Job | None) -> Path:
-    """Return the notebook of a WORKBOOK argument: a path, the job's copy, else the template.
-
-    Raises JobError with the nearest name when there is none.
-    """
-    if name.endswith(".ipynb"):
-        path = Path(name)
-        if not path.is_file():
-            raise JobError(f"there is no notebook '{name}'")
-        return path
-    if job is not None and name in job.workbooks:
-        return job.notebook(name)
-    known = templates()
-    if name in known:
-        return known[name]
-    every = [*known, *(job.workbooks if job is not None else ())]
-    raise JobError(
-        f"there is no workbook '{name}'",
-        hint=near_match(name, every) or f"there are {', '.join(every)}",
-    )
 
 
 def _run_cells(path: Path, opening: Opening) -> list[Part]:

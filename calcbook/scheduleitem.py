@@ -9,7 +9,7 @@ import numpy as np
 
 from calcbook import units
 from calcbook.items import Carry, Choice, Entry, Item, Line, Schedule, Text
-from calcbook.shown import Printed, Shown, plain_value, twelve
+from calcbook.shown import Printed, Shown, finite, plain_value
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -56,7 +56,7 @@ class ScheduleWriter:
             "sources": [r.source for r in rows],
             "fixed": item.fixed or bool(item.same_rows),
             "fallback": item.name in self.readings.fallbacks,
-            "stale": carried is not None and carried.taken is not None,
+            "stale": bool(item.origin) and carried is not None and carried.taken is not None,
             "from": {"workbook": workbook, "name": name} if dot else None,
             "columns": [self._column(c, item, keys) for c in bound.columns if not c.problem],
             "errors": [*(c.problem for c in bound.columns if c.problem), *bound.faults],
@@ -134,7 +134,7 @@ class ScheduleWriter:
         unit = self.shown.display(bound.name)
         printed = self.shown.column(bound.name, unit)
         found = self.results.values.get(bound.name)
-        si = [twelve(float(v)) for v in found] if isinstance(found, np.ndarray) else [None] * count
+        si = [finite(float(v)) for v in found] if isinstance(found, np.ndarray) else [None] * count
         total = None
         if bound.name in schedule.totals and isinstance(found, np.ndarray):
             total = self._total(bound, float(found.sum()), printed, unit)
@@ -177,15 +177,19 @@ class ScheduleWriter:
     def _governing(
         self, bound: Bound, ranked: Sequence[tuple[str, str, int]], keys: Sequence[str]
     ) -> Plain | None:
-        """Return the governing row with its computed columns worked in full."""
+        """Return the governing rows, each with what leads to its value worked in full."""
         if not ranked:
             return None
-        column, which, row = ranked[0]
+        wanted: dict[tuple[int, str], None] = {}
+        for column, _, row in ranked:
+            wanted |= dict.fromkeys((row, name) for name in self._leading_to(column, bound))
         lines = [
-            self.lines.in_row(c, c.item, row, self._case(c, row))
+            self.lines.in_row(c, c.item, row, self._case(c, row)) | {"row": keys[row]}
+            for row in dict.fromkeys(row for _, _, row in ranked)
             for c in bound.columns
-            if isinstance(c.item, Line) and c.name in self._leading_to(column, bound)
+            if isinstance(c.item, Line) and (row, c.name) in wanted
         ]
+        column, which, row = ranked[0]
         return {"row": keys[row], "why": f"{which} {column}", "column": column, "lines": lines}
 
     def _leading_to(self, column: str, bound: Bound) -> set[str]:

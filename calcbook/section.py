@@ -66,7 +66,7 @@ class Rows(Declarations):
     def governing(self, column: str, which: str = "largest") -> None:
         """Name the row with the 'largest', 'smallest' or 'largest magnitude' value.
 
-        May be called for several columns; the row of the first is worked in full.
+        May be called for several columns; each row is worked in full.
         """
         if which not in RANKS:
             raise DeclarationError(f"no row is the '{which}'", hint=", ".join(RANKS))

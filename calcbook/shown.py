@@ -61,13 +61,18 @@ def twelve(value: float | None) -> float | None:
     return float(f"{value:.12g}")
 
 
+def finite(value: float | None) -> float | None:
+    """Return a float, or None where it is not finite."""
+    return value if value is not None and math.isfinite(value) else None
+
+
 def plain_value(printed: Printed | None, si: float | None, unit: units.Unit) -> dict[str, Any]:
     """Return one value as plain data: SI, value in its unit, the unit and the printed text."""
     if printed is None or si is None:
         return {"si": None, "value": None, "unit": unit.text, "text": ""}
     return {
-        "si": twelve(si),
-        "value": twelve(si / unit.factor),
+        "si": finite(si),
+        "value": finite(si / unit.factor),
         "unit": unit.text,
         "text": printed.text,
     }

@@ -33,6 +33,7 @@ from calcbook.reading import range_text
 from calcbook.reasons import Reasons
 from calcbook.scheduleitem import ScheduleWriter
 from calcbook.shown import Printed, Shown, exact_text, plain_value, twelve
+from calcbook.standing import is_input, is_unconfirmed, unconfirmed_rows
 from calcbook.tree import Compare, Quoted, walk
 from calcbook.verdict import ratio, ratio_text, side_texts
 
@@ -46,7 +47,7 @@ if TYPE_CHECKING:
     from calcbook.table import Table
     from calcbook.workbook import Workbook
 
-__all__ = ["SCHEMA", "Writer", "fingerprint", "plain_value", "schema", "twelve"]
+__all__ = ["SCHEMA", "Writer", "fingerprint", "plain_value", "schema", "twelve", "twelve_digits"]
 
 SCHEMA = 1
 Plain = dict[str, Any]
@@ -238,7 +239,7 @@ class Writer:
             "relation": relation,
             "demand": left,
             "limit": right,
-            "ratio": twelve(used),
+            "ratio": used,
             "ratio_text": "" if used is None else ratio_text(used, relation, held),
             "satisfied": held,
         }
@@ -302,18 +303,16 @@ def counts(sections: Sequence[Plain]) -> dict[str, int]:
     items: list[Plain] = [i for s in sections for i in s["items"] if i["applies"]]
     schedules = [i for i in items if i["kind"] == "schedule"]
     columns = [c for i in schedules for c in i["columns"] if c["applies"]]
-    given = {"entry", "choice", "text"}
-    inputs = [i for i in items if i["kind"] in given or (i.get("fallback") and "from" in i)]
-    inputs = [i for i in inputs if i["kind"] != "schedule"]
-    rows = [c for i in schedules if not i["fixed"] for c in i["confirmed"]]
+    rows = sum(len(i["rows"]) for i in schedules if not i["fixed"])
+    waiting = sum(map(is_unconfirmed, items)) + sum(len(unconfirmed_rows(i)) for i in items)
     checks = [i for i in items if i["kind"] == "check"]
     faulty = [
         c for i in schedules if not i["problem"] for c in i["columns"] if any(c["problem"] or ())
     ]
     problems = sum(bool(i["problem"]) or i["kind"] == "error" for i in items)
     return {
-        "entries": len(inputs) + len(rows),
-        "unconfirmed": sum(not i["confirmed"] for i in inputs) + sum(not c for c in rows),
+        "entries": sum(map(is_input, items)) + rows,
+        "unconfirmed": waiting,
         "checks": len(checks),
         "not_satisfied": sum(i["satisfied"] is False for i in checks),
         "undecided": sum(i["satisfied"] is None for i in checks),
@@ -364,3 +363,18 @@ def _table(table: Table) -> Plain:
 
 def _nested(values: Sequence[Any], convert: Callable[[float], object]) -> list[object]:
     return [_nested(v, convert) if isinstance(v, (tuple, list)) else convert(v) for v in values]
+
+
+def twelve_digits(data: Any) -> Any:  # noqa: ANN401  (plain data nests)
+    """Return plain data with every float at twelve significant digits, as JSON results carry.
+
+    A statement itself holds full doubles: a value carried from one workbook to another must not
+    move across a threshold by being rounded on the way.
+    """
+    if isinstance(data, float):
+        return twelve(data)
+    if isinstance(data, dict):
+        return {key: twelve_digits(value) for key, value in data.items()}
+    if isinstance(data, (list, tuple)):
+        return [twelve_digits(value) for value in data]
+    return data

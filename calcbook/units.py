@@ -18,10 +18,12 @@ import pint
 from pint.util import UnitsContainer
 
 from calcbook.errors import DeclarationError, QuantityError, near_match
+from calcbook.misspelt import is_misspelt, unit_hint
 from calcbook.quantities import (
     Typed,
     format_number,
     read_typed,
+    refuse_slope,
     significant_decimals,
 )
 
@@ -66,6 +68,7 @@ registry.load_definitions(_DEFINITIONS)
 _OFFSET = {"degC", "degF", "°C", "°F", "C", "F", "celsius", "fahrenheit", "Celsius", "Fahrenheit"}
 _ATOM = re.compile(r"(?P<name>[A-Za-zµ°%_]+)(?:(?:(?:\^|\*\*) *)?(?P<power>-?[1-9])(?![0-9.]))?")
 _OPERATOR = re.compile(r" *(?P<sign>[*·/]|-(?=[A-Za-z])) *| +")
+_EXAMPLES = {"number": "0.85", "speed": "70 m/s", "angle": "12 deg"}
 _SUPERSCRIPTS = str.maketrans("¹²³⁴⁵⁶⁷⁸⁹⁻", "123456789-")
 _RAISED = str.maketrans("123456789-", "¹²³⁴⁵⁶⁷⁸⁹⁻")
 _PRETTY = {"deg": "°", "degree": "°", "degrees": "°", "degR": "°R", "percent": "%"}
@@ -166,12 +169,8 @@ def _refuse_unknown(text: str, match: re.Match[str]) -> None:
             text=text,
             span=span,
         )
-    alike = [known for known in _ATOMS if known.lower() == name.lower()]
-    hint = f"did you mean '{alike[0]}'?" if alike else near_match(name, _ATOMS)
-    if name == "k":
-        hint = "did you mean 'kip'?"
-    usual = "write a unit such as m, mm, kN, kPa, kN/m2, ft, in, kip, psf"
-    raise QuantityError(f"there is no unit '{name}'", hint=hint or usual, text=text, span=span)
+    hint = unit_hint(name, _ATOMS, around=(text[: span[0]], text[span[1] :]))
+    raise QuantityError(f"there is no unit '{name}'", hint=hint, text=text, span=span)
 
 
 def pretty_unit(text: str) -> str:
@@ -229,11 +228,13 @@ def read_quantity(
     QuantityError
         With what to type instead and the place of the offending part.
     """
-    typed = read_typed(text)
+    if dimension == KINDS["angle"].dimension:
+        refuse_slope(text)
+    typed = read_typed(text, _example(dimension))
     if not typed.unit and bare is not None:
         found, shown = bare, f"{typed.text} {bare.text}".strip()
     else:
-        found, shown = _unit_of(typed), typed.text
+        found, shown = _unit_of(typed, dimension), typed.text
     if dimension is not None and found.dimension != dimension:
         _refuse_dimension(typed, found, dimension)
     si = typed.value * found.factor
@@ -247,14 +248,27 @@ def read_quantity(
     return Quantity(shown, typed.value, found, si)
 
 
-def _unit_of(typed: Typed) -> Unit:
+@lru_cache(maxsize=64)
+def _example(dimension: Dimension | None) -> str:
+    """Return a quantity of a dimension, as an example of what to type."""
+    if dimension is None:
+        return "3.5 kPa"
+    names = [known for known in KINDS.values() if known.dimension == dimension]
+    if not names:
+        return "3.5 followed by its unit"
+    return _EXAMPLES.get(names[0].name, f"3.5 {names[0].si.text}")
+
+
+def _unit_of(typed: Typed, wanted: Dimension | None) -> Unit:
     try:
         return unit(typed.unit)
     except QuantityError as error:
-        span = error.span or (0, len(typed.unit))
+        span, hint = error.span or (0, len(typed.unit)), error.hint
+        if is_misspelt(typed.unit):
+            hint = unit_hint(typed.unit, _ATOMS, fits=lambda text: unit(text).dimension == wanted)
         raise QuantityError(
             error.what,
-            hint=error.hint,
+            hint=hint,
             text=typed.text,
             span=(typed.start + span[0], typed.start + span[1]),
         ) from None
@@ -326,6 +340,7 @@ _KINDS = (
     ("unit weight", "kN/m3", "pcf", 2, 1),
     ("subgrade modulus", "kN/m3", "pci", 0, 1),
     ("moment", "kN*m", "kip*ft", 1, 1),
+    ("overturning moment", "kN*m", "kip*ft", 0, 0),
     ("stiffness", "kN/m", "kip/in", 0, 1),
     ("rotational stiffness", "kN*m/rad", "kip*ft/rad", 0, 0),
     ("bending stiffness", "kN*m2", "kip*ft2", 0, 0),

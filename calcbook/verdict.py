@@ -5,11 +5,14 @@ Verdicts come from unrounded values; what is printed must never say otherwise.
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from calcbook import units
 
 TOLERANCE = 1e-9  # a demand that equals its limit but for rounding is satisfied
+LEFTOVER = 1e-6  # of the larger side: what remains of a demand whose terms cancel
 STRICT = frozenset({"<", ">", "!="})
 MOST_DECIMALS = 12
 UPWARD = frozenset({"<=", "<"})
@@ -57,7 +60,7 @@ def worst(left: Side, right: Side, relation: str) -> tuple[Side, Side, bool]:
 def ratio(demand: object, limit: object, relation: str) -> float | None:
     """Return how much of its limit a demand uses: 1 at the limit, more beyond it.
 
-    None where it says nothing: another relation, a limit of zero, or sides of unlike sign.
+    None where it says nothing: another relation, a side of zero, or sides of unlike sign.
     """
     if not isinstance(demand, float) or not isinstance(limit, float):
         return None
@@ -65,7 +68,9 @@ def ratio(demand: object, limit: object, relation: str) -> float | None:
         return None
     toward_zero = (demand < 0 or limit < 0) == (relation in UPWARD)
     over, under = (limit, demand) if toward_zero else (demand, limit)
-    return over / under if under and over / under >= 0 else None
+    alike = (demand > 0 and limit > 0) or (demand < 0 and limit < 0)
+    used = over / under if alike else math.inf
+    return used if math.isfinite(used) else None
 
 
 def ratio_text(value: float, relation: str, held: bool | None) -> str:
@@ -82,7 +87,9 @@ def side_texts(demand: float, limit: float) -> tuple[str, str]:
     """Return demand and limit with four significant figures, more when they would print alike."""
     largest = max(abs(demand), abs(limit))
     most = units.significant_decimals(largest, 4) + 3 if largest else 3
-    each = (units.significant_decimals(v, 4) for v in (demand, limit) if v)
+    each = (
+        units.significant_decimals(v, 4) for v in (demand, limit) if abs(v) > LEFTOVER * largest
+    )
     decimals = min(max(each, default=3), most)
     while True:
         one, other = (units.format_number(v, decimals) for v in (demand, limit))

@@ -201,16 +201,25 @@ class Workbook:
             raise InputError(
                 f"{name} is computed by this workbook and cannot be set", where=self.name
             )
-        hint = near_match(name, known) or f"entries are {', '.join(known)}"
+        supplied = [n for n, item in known.items() if self._is_supplied(item)]
+        hint = near_match(name, known) or f"entries are {', '.join(supplied) or 'none'}"
         raise InputError(f"there is no entry '{name}'", where=self.name, hint=hint)
 
     def schedule_item(self, name: str) -> Schedule:
         """Return the schedule of a name; InputError with the nearest name when there is none."""
         known = {i.name: i for i in self.items() if isinstance(i, Schedule)}
         if name not in known:
-            hint = near_match(name, known) or f"schedules are {', '.join(known) or 'none'}"
+            supplied = [n for n, item in known.items() if self._is_supplied(item)]
+            hint = near_match(name, known) or f"schedules are {', '.join(supplied) or 'none'}"
             raise InputError(f"there is no schedule '{name}'", where=self.name, hint=hint)
         return known[name]
+
+    def _is_supplied(self, item: Item) -> bool:
+        """Whether an item belongs to this code set and is supplied here, not brought forward."""
+        elsewhere = isinstance(item, Carry)
+        if isinstance(item, Schedule):
+            elsewhere = bool(item.same_rows or item.origin or item.fixed)
+        return not elsewhere and (not item.codes or self.code.name in item.codes)
 
     def not_used(self) -> list[str]:
         """Return the names of inputs given that belong to another code set."""

@@ -135,10 +135,10 @@ class Reader:
         for schedule in self.schedules:
             governing = schedule.get("governing")
             if schedule["applies"] and governing:
-                row = schedule["rows"].index(governing["row"])
                 for line in governing["lines"]:
+                    row = schedule["rows"].index(line["row"])
                     hand = np.broadcast_to(self.work(line), len(schedule["rows"]))
-                    yield f"{line['number']} row {governing['row']}", line, float(hand[row])
+                    yield f"{line['number']} row {line['row']}", line, float(hand[row])
 
     def every_column(self) -> Iterator[tuple[str, Plain, np.ndarray]]:
         """Yield (name, column, hand results) of every computed column with one formula."""

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import json
+import subprocess
+import sys
 from typing import TYPE_CHECKING, Any
 
 from notebooks import contents
@@ -13,6 +15,12 @@ if TYPE_CHECKING:
     from pathlib import Path
 
     import pytest
+
+
+def command(*words: str, **options: object) -> subprocess.CompletedProcess[str]:
+    """Give a command in a process of its own."""
+    run = [sys.executable, "-m", "calcbook.cli", *words]
+    return subprocess.run(run, capture_output=True, text=True, check=False, **options)  # type: ignore[call-overload]
 
 
 def printed(capsys: pytest.CaptureFixture[str], *words: str, status: int = 0) -> str:

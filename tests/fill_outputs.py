@@ -1,7 +1,8 @@
 """Fill the saved outputs of the templates and of the demo job, after a change of what is printed.
 
 The demo job takes the cells of the templates; each notebook is then run in a kernel of its own
-in its own folder, as nbval runs it.
+in its own folder, as nbval runs it. Code is saved folded, so that a workbook opens as a page of
+calculation.
 """
 
 from __future__ import annotations
@@ -21,7 +22,7 @@ def fill(notebook: Path, cells_of: Path) -> None:
     """Run the cells of one notebook and save them, with their outputs, as another."""
     node = nbformat.read(cells_of, as_version=4)
     for cell in node.cells:
-        cell.metadata = {}
+        cell.metadata = {"jupyter": {"source_hidden": True}} if cell.cell_type == "code" else {}
     client = NotebookClient(
         node, resources={"metadata": {"path": notebook.parent}},
         record_timing=False, store_widget_state=False,

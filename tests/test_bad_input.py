@@ -106,6 +106,10 @@ TYPED = {
     "V=1,5 m/s": ("V: there is a comma in the number", "write 1.5 m/s"),
     "V=1 234 m/s": ("V: there is a space inside the number", "write 1234 m/s"),
     "V=1.5,5 m/s": ("V: there is a comma in the number", "one number with one point"),
+    "v=50 m/s": ("wind: there is no entry 'v'", "did you mean 'V'?"),
+    "speed=50 m/s": ("there is no entry 'speed'", "entries are V, C, wall, seen_by"),
+    "V=fast": ("V: this does not start with a number", "for example 70 m/s"),
+    "V=150 kph": ("V: there is no unit 'kph'", "did you mean 'km/h'?"),
     "V=40": ("V: a speed needs its unit", "40 m/s or 40 mph"),
     "V=4 kPa": ("'kPa' is a unit of pressure, and a unit of speed is wanted",),
     "V=nan": ("'nan' is not a value",),
@@ -115,6 +119,7 @@ TYPED = {
     "V=-40 m/s": ("V: -40 m/s is outside the range",),
     "V=4e4 km/h": ("V: 4e4 km/h is outside the range",),
     "wall=soild": ("'soild' is no option of wall", "did you mean 'solid'?"),
+    "wall=Solid": ("'Solid' is no option of wall", "did you mean 'solid'?"),
     "wall=none": ("'none' is refused: a building without walls is not covered",),
     "p=3 kPa": ("p is computed by this workbook and cannot be set",),
     "levels=3": ("levels is a schedule and has rows", "--rows levels=FILE.csv"),
@@ -145,8 +150,11 @@ ROWS = {
     "Level,y (m)\nA,4\n": ("r.csv, line 1: unknown column 'y'", "known here: z"),
     "Level,source\nA,4\n": ("r.csv, line 1: there is no column 'z'", "the columns are"),
     "Level,z\nA,4\n": ("r.csv, line 2, column 'z': '4' has no unit", "z (m)"),
-    "Level,z (m)\nA,4\nB\n": ("r.csv, line 3", "the row has 1 cells and there are 2 headers"),
-    "Level;z (m)\nA;4,5\n": ("r.csv, line 2, column 'z': '4,5' has a decimal comma", "4.5"),
+    "Level,z (m)\nA,4\nB\n": ("r.csv, line 3", "not as many cells (1) as there are headers (2)"),
+    "Level;z (m)\nA;4,5\n": (
+        "r.csv, line 2, column 'z': there is a comma in the number '4,5'",
+        "4.5",
+    ),
     "Level,z (m)\nA,4\nA,3\n": ("r.csv, line 3", "the key 'A' was used before, in line 2"),
     "": ("r.csv: the file is empty",),
     "Level,z (m)\n": ("r.csv, line 1: there are headers and no rows",),
@@ -170,8 +178,8 @@ CASES = {
     "V (m/s)\n50\n500\n": ("c.csv, case 2, V: 500 m/s is outside the range",),
     "VV (m/s)\n50\n": ("c.csv, line 1: unknown column 'VV'", "did you mean 'V'?"),
     "V\n50\n": ("c.csv, line 2, column 'V': '50' has no unit",),
-    "V (m/s);C\n50;0,5\n": ("c.csv, line 2, column 'C': '0,5' has a decimal comma",),
-    "V (m/s),C\n50\n": ("c.csv, line 2", "the row has 1 cells"),
+    "V (m/s);C\n50;0,5\n": ("c.csv, line 2, column 'C': there is a comma in the number",),
+    "V (m/s),C\n50\n": ("c.csv, line 2", "not as many cells (1)"),
     "V (m/s),C\n50,\n": ("c.csv, line 2, column 'C': the cell is empty",),
     "V (kN)\n50\n": ("c.csv, case 1, V: 'kN' is a unit of force",),
     "wall\nsolid\nnone\n": ("c.csv, case 2, wall: 'none' is refused",),
@@ -200,8 +208,11 @@ BASIS = (
     (
         'with book.section("Levels") as s:\n'
         '    s.entry("h", "Height", "9 m", unit="length", low="1 m")\n'
+        '    s.line("h_2 = 2*h", "Twice the height")\n'
         '    with s.schedule("levels", "Levels", rows=[{"key": "Roof", "z": "8 m"}]) as t:\n'
-        '        t.entry("z", "Elevation", unit="length")'
+        '        t.entry("z", "Elevation", unit="length")\n'
+        '    s.line("top = max(z) + h_2", "Highest point")\n'
+        '    s.line("three = \'3 m\'", "Always the same")'
     ),
 )
 LOADS = (
@@ -209,6 +220,8 @@ LOADS = (
     (
         'with book.section("Loads") as s:\n'
         '    s.carry("H", "basis.h", "Height", unit="length", fallback="5 m")\n'
+        '    s.carry("top", "basis.top", "Top", unit="length", fallback="5 m")\n'
+        '    s.carry("three", "basis.three", "Three", unit="length", fallback="5 m")\n'
         '    with s.schedule("storeys", "Storeys", origin="basis.levels",\n'
         '                    rows=[{"key": "Roof"}]) as t:\n'
         '        t.carry("z", "z", "Elevation", unit="length")\n'
@@ -220,7 +233,17 @@ LOADS = (
 )
 ELSEWHERE = {
     "H=6 m": ("loads: H is carried from basis.h", "calcbook set basis h=VALUE"),
-    "storeys=r.csv": ("loads: storeys is carried from basis.levels",),
+    "top=6 m": (
+        "loads: top is carried from basis.top",
+        "it is computed there from h and the rows of levels: calcbook set basis h=VALUE",
+    ),
+    "three=6 m": ("it is computed there, and from no entry",),
+    "heights=6 m": ("there is no entry 'heights'", "entries are none"),
+    "storeys=r.csv": (
+        "loads: storeys is carried from basis.levels",
+        "change it there: calcbook set basis --rows levels=FILE.csv",
+    ),
+    "walls=r.csv": ("there is no schedule 'walls'", "schedules are none"),
     "zones=r.csv": ("the rows of zones belong to the method",),
     "forces=r.csv": ("forces has the rows of zones", "--rows zones=FILE.csv"),
     "zone=r.csv": ("there is no schedule 'zone'", "did you mean 'zones'?"),
@@ -260,6 +283,8 @@ USAGE = {
     "open nowhere": ("'nowhere' is not a job",),
     "run wnd-pressure": ("there is no workbook 'wnd-pressure'", "did you mean 'wind-pressure'?"),
     "run gone.ipynb": ("there is no notebook 'gone.ipynb'",),
+    "run snow": ("there is no workbook 'snow'", "there are: wind, column-accumulation, column-schedule, dead-load-take-off, "),
+    "run wind --rows levels=.": ("'.' is a folder", "name a CSV file"),
     "run wind:B.1.": ("'B.1.' cannot be a mark",),
     "run wind:B1": ("wind has no mark 'B1' in this job",),
     "set design-basis place=Osmere": ("has no workbook 'design-basis'", "it has: wind"),

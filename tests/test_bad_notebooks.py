@@ -109,6 +109,7 @@ CODE = {
     "1/0": ("the cell stopped: ZeroDivisionError", "    1/0"),
     "raise SystemExit(0)": ("the cell stopped: SystemExit",),
     "%matplotlib inline": ("notebook commands do not run outside Jupyter", "write it in Python"),
+    "!ls -l": ("notebook commands do not run outside Jupyter", "!ls -l"),
     "if": ("the cell stopped: SyntaxError",),
 }
 
@@ -122,6 +123,23 @@ def test_notebook_code_that_may_not_be(
     notebook = make_notebook(tmp_path / "wind.ipynb", (OPEN, cell))
     message = refused(capsys, tmp_path, "run", str(notebook))
     says(message, "wind.ipynb, cell 2", *CODE[code])
+
+
+def test_command_of_a_whole_cell(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """A cell in another language is refused for its first line, whatever stands below."""
+    notebook = make_notebook(tmp_path / "wind.ipynb", (OPEN, "%%bash\necho 'it\n"))
+    message = refused(capsys, tmp_path, "run", str(notebook))
+    says(message, "wind.ipynb, cell 2: notebook commands do not run", "    %%bash")
+
+
+def test_text_that_only_looks_like_a_command(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A line of a string, or of an expression, may begin with such a sign."""
+    cell = 'words = """\n%matplotlib\n! take care\n"""\nrest = (7\n    % 4)\n'
+    notebook = make_notebook(tmp_path / "wind.ipynb", (OPEN, cell + SITE))
+    assert main(["run", str(notebook)]) == 0
+    assert "Height: h = 9 m" in capsys.readouterr().out
 
 
 @pytest.mark.parametrize("words", [("run", "one"), ("status", "."), ("set", "one", "x=2 m")])

@@ -217,6 +217,17 @@ def test_whatever_cannot_be_accepted_stands_in_its_place(declare: Callable[[Any]
     assert found["y"]["value"]["si"] == 1.0
 
 
+def test_a_clause_that_cannot_be_accepted_keeps_its_symbol() -> None:
+    """What uses the symbol of a refused clause says so, and does not call the symbol unknown."""
+    book = books.book()
+    with book.section("S") as s:
+        s.clause("gust effect factor", unit="presure", G="G_f")
+        s.line("y = 2*G_f", "y")
+    found = books.items(book.statement())
+    assert found["G_f"]["kind"] == "error"
+    assert found["y"]["problem"] == "not available because of G_f"
+
+
 def test_a_misspelt_governing_rank_is_refused_at_once() -> None:
     """What a schedule is asked for outside its columns is refused where it is written."""
     book = books.book()

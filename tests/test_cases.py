@@ -105,7 +105,8 @@ def test_failing_cases_by_check(book: Workbook) -> None:
     given = columns(200)
     many, program = cases.read(book, given), book.many()
     found = cases.compute(program, many.values, many.rows)
-    (places,) = cases.failing(program, many, found).values()
+    ((bound, places),) = cases.failing(program, many, found)
+    assert (bound.number, bound.item.meaning) == ("2.4", "Cladding as supplied")
     assert places.tolist() == np.flatnonzero(found["p"] > 1000.0).tolist()
     assert 0 < places.size < 200
 
@@ -159,6 +160,28 @@ def test_entry_without_a_value_needs_a_column(tmp_path: Path) -> None:
     assert cases.evaluate(book, {"V": ["20 m/s"]})["q"] == pytest.approx([245.2], rel=EXACT)
 
 
+IDLE = (
+    'from calcbook import open_workbook\nbook = open_workbook("roof", "Roof")',
+    """with book.section("Roof") as s:
+    s.choice("form", "Form", ["flat", "gable"], "flat")
+    s.choice("ridge", "Ridge", ["X", "Y"], when="form == 'gable'")
+    s.entry("r", "Rise", unit="length", when="form == 'gable'")
+    s.line("h", "Height", result=True, cases=[("form == 'gable'", "'5 m' + r"), ("", "'5 m'")])""",
+)
+
+
+def test_input_that_does_not_apply_needs_no_value(tmp_path: Path) -> None:
+    """An input without a value stands in nobody's way in cases it does not apply in."""
+    book, _ = Runner().run(Filling(make_notebook(tmp_path / "roof.ipynb", IDLE)))
+    assert cases.evaluate(book, {"form": ["flat", "flat"]})["h"].tolist() == [5.0, 5.0]
+    given = {"form": ["flat", "gable"], "ridge": ["X", "Y"], "r": ["1 m", "2 m"]}
+    assert cases.evaluate(book, given)["h"].tolist() == [5.0, 7.0]
+    for missing in ("ridge", "r"):
+        rest = {name: texts for name, texts in given.items() if name != missing}
+        with pytest.raises(InputError, match=f"case 2: {missing} has no value yet"):
+            cases.evaluate(book, rest)
+
+
 def write_cases(path: Path, count: int) -> Path:
     """Write a file of cases with a unit in a header."""
     given = columns(count)
@@ -170,17 +193,33 @@ def write_cases(path: Path, count: int) -> Path:
 def test_command_prints_one_row_per_case(
     tmp_path: Path, notebook: Path, book: Workbook, capsys: pytest.CaptureFixture[str]
 ) -> None:
-    """The rows hold results in the units of their headers; a check that fails gives status 1."""
+    """A row is a case as given and its results; a check that fails is named, with status 1."""
     file = write_cases(tmp_path / "c.csv", 50)
     assert main(["run", str(notebook), "--cases", str(file)]) == 1
     printed = capsys.readouterr()
     rows = list(csv.reader(io.StringIO(printed.out)))
-    assert rows[0] == ["q (kPa)", "p (kPa)", "r"]
-    found = cases.evaluate(book, columns(50))
-    assert [float(row[0]) for row in rows[1:]] == pytest.approx(found["q"] / 1000, rel=1e-11)
-    idle = [number for number, row in enumerate(rows[1:]) if row[2] == ""]
+    assert rows[0] == ["V", "C", "wall", "q (kPa)", "p (kPa)", "r"]
+    given = columns(50)
+    assert [row[:3] for row in rows[1:]] == [
+        list(case) for case in zip(*given.values(), strict=True)
+    ]
+    found = cases.evaluate(book, given)
+    assert [float(row[3]) for row in rows[1:]] == pytest.approx(found["q"] / 1000, rel=1e-11)
+    idle = [number for number, row in enumerate(rows[1:]) if row[5] == ""]
     assert idle == np.flatnonzero(np.isnan(found["r"])).tolist()
-    assert "not satisfied: p <= '1 kPa' in " in printed.err
+    assert "not satisfied: 2.4 Cladding as supplied, p <= '1 kPa', in " in printed.err
+
+
+def test_command_repeats_cells_as_given(
+    tmp_path: Path, notebook: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """Cells stand in the output as they stood in the file, their unit in the header."""
+    file = tmp_path / "c.csv"
+    file.write_text('V [km/h];seen_by\n36;"R, A"\n20.0 m/s;B\n')
+    assert main(["run", str(notebook), "--cases", str(file)]) == 0
+    lines = capsys.readouterr().out.splitlines()
+    assert lines[0] == "V (km/h),seen_by,q (kPa),p (kPa),r"
+    assert [line.rsplit(",", 3)[0] for line in lines[1:]] == ['36,"R, A"', "20.0 m/s,B"]
 
 
 def test_command_prints_cases_as_json(
@@ -190,7 +229,9 @@ def test_command_prints_cases_as_json(
     file = tmp_path / "c.csv"
     file.write_text("wall,V (km/h)\nsolid,36\nlouvre,72\n")
     assert main(["run", str(notebook), "--cases", str(file), "--json", "--set", "C=1"]) == 0
-    names = json.loads(capsys.readouterr().out)["names"]
+    found = json.loads(capsys.readouterr().out)
+    names = found["names"]
+    assert found["entries"]["V"] == {"unit": "km/h", "values": ["36", "72"]}
     assert names["p"] == {"unit": "kPa", "values": [0.0613, 0.1226]}
     assert names["r"] == {"unit": "", "values": [1.0, None]}
 

@@ -2,27 +2,21 @@
 
 from __future__ import annotations
 
-import datetime as dt
-import importlib.util
 import os
 import subprocess
 import sys
-from typing import TYPE_CHECKING, Self
+from typing import TYPE_CHECKING
 
 import pytest
-from command_line import printed, results
+from command_line import command, printed, results
 from notebooks import BASIS, LOADS, WIND, contents, make_job, make_notebook
 
 from calcbook.cli import COMMANDS, main
 from calcbook.commands import common
-from calcbook.job import Job
 from calcbook.run import Runner
 
 if TYPE_CHECKING:
     from pathlib import Path
-
-
-TODAY = dt.datetime.now().astimezone().date().isoformat()
 
 
 @pytest.fixture
@@ -31,12 +25,6 @@ def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
     job = make_job(tmp_path / "job", {"design-basis": BASIS, "wind": WIND, "loads": LOADS})
     monkeypatch.chdir(job)
     return job
-
-
-def command(*words: str, **options: object) -> subprocess.CompletedProcess[str]:
-    """Give a command in a process of its own."""
-    run = [sys.executable, "-m", "calcbook.cli", *words]
-    return subprocess.run(run, capture_output=True, text=True, check=False, **options)  # type: ignore[call-overload]
 
 
 # --- help and status ----------------------------------------------------------------------------
@@ -52,6 +40,7 @@ def test_help_names_every_command(capsys: pytest.CaptureFixture[str]) -> None:
         own = printed(capsys, name, "--help")
         assert f"usage: calcbook {name}" in own
         assert "exit status:" in own
+        assert ("MARK is one of several" in own) == ("WORKBOOK[:MARK]" in own)
 
 
 def test_help_and_slips_wait_for_no_library() -> None:
@@ -114,7 +103,7 @@ def test_command_that_stops(
     status = main(["run", "wind"])
     first, _, rest = capsys.readouterr().err.partition("\n")
     assert (status, first) == expected
-    assert rest.startswith("nothing was written; please report" if first else "")
+    assert rest.startswith("look at the job's folder before going on" if first else "")
     assert "Traceback" not in rest
     assert contents(folder) == before
 
@@ -210,6 +199,31 @@ def test_run_outside_a_job(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -
     assert found["entries"]["H"]["confirmed"] is False
 
 
+def test_run_says_when_a_template_is_computed(
+    folder: Path, tmp_path: Path, capsys: pytest.CaptureFixture[str],
+    monkeypatch: pytest.MonkeyPatch,
+) -> None:  # fmt: skip
+    """Outside a job, and for a workbook the job does not have, standard error says whose values."""
+    assert main(["run", "wind"]) == 0
+    assert capsys.readouterr().err == ""
+    monkeypatch.chdir(make_job(tmp_path / "other", {"wind": WIND}))
+    assert main(["run", "wind-pressure"]) == 0
+    assert capsys.readouterr().err == (
+        "this job has no wind-pressure: the template's values are computed\n"
+    )
+    monkeypatch.chdir(tmp_path)
+    assert main(["run", "wind-pressure", "--json"]) == 0
+    printed = capsys.readouterr()
+    assert printed.err == "no job here: the template's values are computed\n"
+    assert '"workbook": "wind-pressure"' in printed.out
+    assert (
+        main(["run", str(make_notebook(folder / "w2.ipynb", [WIND[0].replace("wind", "w2")]))]) == 0
+    )
+    assert capsys.readouterr().err == (
+        "w2 will not be in the package: add 'w2' to the list of workbooks in job.toml\n"
+    )
+
+
 def test_run_finds_the_job_of_the_environment(
     folder: Path, tmp_path: Path, capsys: pytest.CaptureFixture[str],
     monkeypatch: pytest.MonkeyPatch,
@@ -239,101 +253,3 @@ def test_printed_problems_are_listed_once(folder: Path, capsys: pytest.CaptureFi
     found = results(capsys, "wind", status=2)
     assert found["problems"] == ["2.3 r: has no value: a division by zero"]
     assert found["values"]["r"]["si"] is None
-
-
-# --- whole jobs ---------------------------------------------------------------------------------
-
-
-def test_start_makes_a_job_of_the_templates(
-    tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
-    """A new job has every template, what others rest on first, and today's date of issue."""
-    folder = tmp_path / "new" / "clinic"
-    text = printed(capsys, "start", str(folder))
-    job = Job.load(folder)
-    assert job.workbooks[:3] == ("design-basis", "dead-load-take-off", "wind-pressure")
-    assert job.record("design-basis").entries["issue_date"].value == TODAY
-    assert "calcbook set design-basis" in text
-    told = printed(capsys, "status", str(folder), status=2)  # it has no column yet
-    assert "unconfirmed: job_name" in told
-
-
-@pytest.fixture(scope="module")
-def demo(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, subprocess.CompletedProcess[str]]:
-    """Return the demo job's folder and what the command that made it printed."""
-    folder = tmp_path_factory.mktemp("demo") / "clinic"
-    return folder, command("demo", str(folder))
-
-
-def test_demo_makes_job_and_pack(demo: tuple[Path, subprocess.CompletedProcess[str]]) -> None:
-    """The demo says its steps with seconds, the pack's pages, and the two entries left open."""
-    folder, done = demo
-    assert (done.returncode, done.stderr) == (0, "")
-    job = Job.load(folder)
-    pdf = (folder / f"{job.number}.pdf").read_bytes()
-    assert pdf.startswith(b"%PDF")
-    pages = pdf.count(b"/Type /Page\n") + pdf.count(b"/Type/Page/")
-    assert f"{job.number}.pdf: {pages} pages" in done.stdout
-    assert all(f"  {name} " in done.stdout for name in job.workbooks)
-    unconfirmed = [line for line in done.stdout.splitlines() if "unconfirmed: " in line]
-    assert sum(len(line.split("unconfirmed: ")[1].split(", ")) for line in unconfirmed) == 2
-
-
-def test_pack_of_a_job_with_a_failing_check(
-    folder: Path, tmp_path: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
-    """The pack is written all the same, under the folder's name or where told, with status 1."""
-    printed(capsys, "set", "design-basis", "h=50 m")
-    text = printed(capsys, "pack", str(folder), status=1)
-    assert "loads: NOT SATISFIED: Capacity, F <= '100 kN'" in text
-    output = tmp_path / "elsewhere.pdf"
-    assert main(["pack", str(folder), "--output", str(output)]) == 1
-    again = capsys.readouterr()
-    assert f"{output}: " in again.out
-    assert "  wind   " in again.err
-    assert output.read_bytes() == (folder / "job.pdf").read_bytes()
-
-
-class Server:
-    """Stands in for a JupyterLab that is interrupted once and then closed."""
-
-    def __init__(self, words: list[str], env: dict[str, str]) -> None:
-        Server.words, Server.env = words, env
-        self.interrupted = False
-
-    def __enter__(self) -> Self:
-        """Begin like a process."""
-        return self
-
-    def __exit__(self, *_: object) -> None:
-        """End like a process."""
-
-    def wait(self) -> int:
-        """Be interrupted the first time, and end well the second."""
-        if not self.interrupted:
-            self.interrupted = True
-            raise KeyboardInterrupt
-        return 0
-
-
-def test_open_starts_jupyterlab_on_the_job(
-    folder: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
-) -> None:
-    """JupyterLab is started on the folder, knows the job, shows no news, and survives a Ctrl-C."""
-    monkeypatch.setattr(subprocess, "Popen", Server)
-    printed(capsys, "open", ".")
-    assert Server.words[:3] == [sys.executable, "-m", "jupyterlab"]
-    assert f"--ServerApp.root_dir={folder.resolve()}" in Server.words
-    assert "--LabApp.news_url=None" in Server.words
-    assert Server.env["CALCBOOK_JOB"] == str(folder.resolve())
-
-
-def test_open_without_jupyterlab(
-    folder: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
-) -> None:
-    """Where JupyterLab is missing the message says how to install it."""
-    monkeypatch.setattr(importlib.util, "find_spec", lambda _: None)
-    assert main(["open", str(folder)]) == 2
-    message = capsys.readouterr().err
-    assert message.startswith("calcbook: JupyterLab is not installed\n")
-    assert "pip install jupyterlab" in message

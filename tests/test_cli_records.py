@@ -9,7 +9,7 @@ import sys
 from typing import TYPE_CHECKING
 
 import pytest
-from command_line import printed, results
+from command_line import printed, refused, results, says
 from notebooks import BASIS, LOADS, WIND, contents, make_job
 
 from calcbook.cli import main
@@ -84,7 +84,11 @@ def test_a_value_is_confirmed_for_the_job(folder: Path, capsys: pytest.CaptureFi
 def test_confirming_a_whole_workbook(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
     """All that has a value is confirmed, the template's values and rows with their sources too."""
     printed(capsys, "set", "design-basis", "job_number=MC-1")
-    printed(capsys, "set", "wind", "--confirm", "RA")
+    assert printed(capsys, "set", "wind", "--confirm", "RA") == (
+        "V = 40 m/s  (map)\nC = 0.8\nwall = solid\n"
+        "levels, Roof: z = 8 m\nlevels, L1: z = 4 m\n"
+        "3 entries and 2 rows confirmed by RA\nwritten to wind.toml\n"
+    )
     found = record(folder, "wind")
     assert {name: e.value for name, e in found.entries.items()} == {
         "V": "40 m/s", "C": "0.8", "wall": "solid",
@@ -93,7 +97,7 @@ def test_confirming_a_whole_workbook(folder: Path, capsys: pytest.CaptureFixture
     assert [row.key for row in found.schedules["levels"]] == ["Roof", "L1"]
     items = [*found.entries.values(), *found.schedules["levels"]]
     assert all(found.is_confirmed(item, "MC-1") for item in items)
-    assert "unconfirmed: seen_by\n" in printed(capsys, "status", ".")
+    assert "wind: checks: 1 satisfied\nloads: " in printed(capsys, "status", ".")
 
 
 def test_what_cannot_be_confirmed_is_named(
@@ -110,8 +114,41 @@ def test_what_cannot_be_confirmed_is_named(
     assert (entries["V"].confirmed, entries["C"].confirmed is None) == (None, False)
 
 
+def test_source_of_what_is_set(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """--source is recorded with each value and row set in the call, and with nothing else."""
+    (folder / "r.csv").write_text("Level,z (m),source\nRoof,9,A-2\nL1,4,\n")
+    printed(capsys, "set", "wind", "C=0.7", "--source", "before")
+    words = ("V=50 m/s", "--rows", "levels=r.csv", "--source", " wind map, sheet 3 ")
+    printed(capsys, "set", "wind", *words)
+    found = record(folder, "wind")
+    sources = {name: entry.source for name, entry in found.entries.items()}
+    assert sources == {"C": "before", "V": "wind map, sheet 3"}
+    assert [row.source for row in found.schedules["levels"]] == ["wind map, sheet 3"] * 2
+    printed(capsys, "set", "wind", "V=51 m/s")
+    assert record(folder, "wind").entries["V"].source == "wind map, sheet 3"
+
+
+def test_a_source_changes_no_confirmation(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """The same value set again with a source stays confirmed: the value is what was confirmed."""
+    printed(capsys, "set", "design-basis", "job_number=MC-1")
+    printed(capsys, "set", "wind", "V=50 m/s", "--confirm", "RA")
+    printed(capsys, "set", "wind", "V=50 m/s", "--source", "wind map")
+    entry = record(folder, "wind").entries["V"]
+    assert (entry.source, entry.confirmed is not None) == ("wind map", True)
+
+
+def test_a_source_without_a_value_is_refused(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A source belongs to what is set in the same call; confirming alone takes none."""
+    message = refused(capsys, folder, "set", "wind", "--source", "map", "--confirm", "RA")
+    says(message, "nothing is set", "write NAME=VALUE or --rows")
+
+
 def test_rows_keep_their_confirmation(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
     """Rows of a file replace those on record; one that is the same stays confirmed."""
+    (folder / "r.csv").write_text("Level,z (m)\nRoof,9\n")
+    assert printed(capsys, "set", "wind", "--rows", "levels=r.csv").startswith("levels: 1 row\n")
     printed(capsys, "set", "design-basis", "job_number=MC-1")
     (folder / "r.csv").write_text("Level,z (m),source\nRoof,9,A-2\nL1,4,A-2\n")
     printed(capsys, "set", "wind", "--rows", "levels=r.csv", "--confirm", "RA")
@@ -164,10 +201,10 @@ def test_status_tells_how_each_workbook_stands(
     text = printed(capsys, "status", ".", status=1)
     for part in (
         (
-            "design-basis: no checks\n  unconfirmed: job_number, units, h\n"
-            "  not used with NSCP 2015: K_e\n"
+            "design-basis: no checks\n  unconfirmed: units, h\n"
+            "  nothing entered: job_number\n  not used with NSCP 2015: K_e\n"
         ),
-        "wind: checks: 1 satisfied\n  unconfirmed: V, C, wall, seen_by, levels (Roof, L1)\n",
+        "wind: checks: 1 satisfied\n  unconfirmed: V, C, wall, levels (Roof, L1)\n",
         (
             "loads: checks: 1 NOT SATISFIED\n"
             "  NOT SATISFIED: 1.4 Capacity, F <= '100 kN', ratio 1.50\n"
@@ -176,6 +213,40 @@ def test_status_tells_how_each_workbook_stands(
     ):
         assert part in text
     assert contents(folder) == before
+
+
+FLOORS = (
+    BASIS[0],
+    """with book.section("Levels") as s:
+    s.choice("units", "Units", ["SI", "US"], "SI")
+    with s.schedule("levels", "Levels", rows=[{"key": "Roof", "z": "8 m"}]) as t:
+        t.entry("z", "Elevation", unit="length")""",
+)
+STOREYS = (
+    LOADS[0],
+    """with book.section("Storeys") as s:
+    with s.schedule("storeys", "Storeys", origin="design-basis.levels",
+                    rows=[{"key": "Roof"}]) as t:
+        t.carry("z", "z", "Elevation", unit="length")
+    with s.schedule("more", "More", same_rows="storeys") as t:
+        t.line("d = 2*z", "Twice")""",
+)
+
+
+@pytest.mark.parametrize("change", ["--rows levels=r.csv", "units=US"])
+def test_status_of_rows_that_moved(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch, change: str
+) -> None:
+    """Carried rows that changed since the pack are stale; what has the same rows is not named."""
+    job = make_job(tmp_path / "job", {"design-basis": FLOORS, "loads": STOREYS})
+    monkeypatch.chdir(job)
+    printed(capsys, "pack", ".")
+    assert "stale" not in printed(capsys, "status", ".")
+    (job / "r.csv").write_text("Level,z (m)\nRoof,9\n")
+    printed(capsys, "set", "design-basis", *change.split())
+    text = printed(capsys, "status", ".")
+    stale = [line for line in text.splitlines() if "stale" in line]
+    assert stale == ["  stale: storeys from design-basis.levels: 1 row, changed since taken"]
 
 
 def test_status_of_a_broken_workbook_shows_the_others(

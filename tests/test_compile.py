@@ -59,7 +59,7 @@ def test_source_is_what_one_would_write() -> None:
     assert source("(-a)**3 - -b**-1") == "(-v_a)**3.0--v_b**-1.0"
     assert source("a + '4.5 kPa'") == "v_a+4500.0"
     assert source("a**2 * '-3 m'") == "v_a*v_a*-3.0"
-    assert source("where(a < b <= c, a, b) + 1") == "(v_a if v_a < v_b <= v_c else v_b)+1.0"
+    assert source("where(a < b <= c, a, b) + 1") == "(v_a if v_a < v_b and v_b <= v_c else v_b)+1.0"
     assert source("not (a > b or roof == 'flat') and c == 2") == (
         "not (v_a > v_b or v_roof == 'flat') and v_c == 2.0"
     )
@@ -220,3 +220,26 @@ def test_a_running_sum_ends_in_the_sum() -> None:
     """The last running sum and the sum are the same number, to the last bit."""
     column = np.array([0.1, 0.2, 0.3, 1e9, 0.7, 1e-7] * 30)
     assert value("running(w)", w=column)[-1] == value("sum(w)", w=column)  # type: ignore[index]
+
+
+@pytest.mark.parametrize(
+    ("text", "below", "at", "above"),
+    [
+        ("theta >= '10 deg'", False, True, True),
+        ("theta > '10 deg'", False, False, True),
+        ("theta <= '10 deg'", True, True, False),
+        ("theta < '10 deg'", True, False, False),
+        ("'10 deg' <= theta", False, True, True),
+        ("'10 deg' > theta", True, False, False),
+    ],
+)
+def test_a_stated_threshold_gives_way_by_the_last_bits(
+    text: str, below: bool, at: bool, above: bool
+) -> None:
+    """A value that is the threshold but for rounding counts as being at it."""
+    ten = math.radians(10)
+    for array in (False, True):
+        read = [value(text, array=array, theta=t) for t in (ten * (1 - 1e-6), ten * (1 + 1e-6))]
+        assert [bool(r) for r in read] == [below, above]
+        for near in (ten * (1 - 1e-13), ten, ten * (1 + 1e-13)):
+            assert bool(value(text, array=array, theta=near)) is at

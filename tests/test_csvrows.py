@@ -86,12 +86,14 @@ def test_empty_cells_are_left_out(tmp_path: Path) -> None:
         ("k,z\n", ", line 1", "headers and no rows"),
         ("k,,z\nA,1,2\n", ", line 1", "header 2 is empty"),
         ("\nk,z (m),z [ft]\nA,1,2\n", ", line 2", "the header 'z' stands twice"),
-        ("k,z,u\nA,1\n", ", line 2, column 'z'", "the row has 2 cells and there are 3 headers"),
+        ("k,z,u\nA,1\n", ", line 2, column 'z'", "not as many cells (2) as there are headers (3)"),
         ("k,z\nA,1\nB,1,5\n", ", line 3, column 'z'", "decimal point (1.5)"),
         ("k;z\nA;1\nB;1;5\n", ", line 3, column 'z'", "fill the row up"),
-        ("k;z\nA;1,5\n", ", line 2, column 'z'", "write it with a decimal point: 1.5"),
-        ("k;z\nA;-12,50 kN/m2\n", ", line 2, column 'z'", "decimal point: -12.50 kN/m2"),
-        ('k,z\nA,"1,5"\n', ", line 2, column 'z'", "'1,5' has a decimal comma"),
+        ("k;z\nA;1,5\n", ", line 2, column 'z'", "write 1.5, with a point"),
+        ("k;z\nA;-12,50 kN/m2\n", ", line 2, column 'z'", "write -12.50 kN/m2, with a point"),
+        ('k,z\nA,"1,5"\n', ", line 2, column 'z'", "a comma in the number '1,5'"),
+        ("k;z\nA;1,600\n", ", line 2, column 'z'", "1600 without the comma, or 1.600 with"),
+        ("k;z\nA;1,600 m\n", ", line 2, column 'z'", "1600 m without the comma, or 1.600 m"),
         ("k,z\nA,1\n\n,2\n", ", line 4, column 'k'", "the row has no key"),
         ("k,z\nA,1\nB,1\nA,2\n", ", line 4, column 'k'", "'A' was used before, in line 2"),
         (b"k,z\nA,1\nB\xe9ton,2\n", ", line 3, byte 2", "CSV UTF-8"),
@@ -136,6 +138,12 @@ def test_columns_that_do_not_fit_are_refused(
     assert message in str(caught.value)
 
 
+def test_folder_is_refused(tmp_path: Path) -> None:
+    """A folder in place of a file is called one, and a file is asked for."""
+    with pytest.raises(InputError, match=r"is a folder\nname a CSV file"):
+        read_table(tmp_path)
+
+
 def test_missing_file_is_refused(tmp_path: Path) -> None:
     """A path without a file is named."""
     with pytest.raises(InputError, match=r"gone\.csv: there is no such file"):
@@ -145,10 +153,14 @@ def test_missing_file_is_refused(tmp_path: Path) -> None:
 def test_cases_are_rows_without_a_key(tmp_path: Path) -> None:
     """A file of cases gives one set of entries per row; equal rows are welcome."""
     path = write(tmp_path, "V (m/s);roof;C\n70;flat;0.8\n70;flat;0.8\n150 mph;gable;1\n")
-    first = {"V": "70 m/s", "roof": "flat", "C": "0.8"}
-    last = {"V": "150 mph", "roof": "gable", "C": "1"}
-    names = {"V": True, "roof": False, "C": False, "h": True}
-    assert read_cases(path, names) == [first, first, last]
+    found = read_cases(path, {"V": True, "roof": False, "C": False, "h": True})
+    assert len(found) == 3
+    assert {name: list(cells) for name, cells in found.entries.items()} == {
+        "V": ["70 m/s", "70 m/s", "150 mph"], "roof": ["flat", "flat", "gable"],
+        "C": ["0.8", "0.8", "1"],
+    }  # fmt: skip
+    assert [str(header) for header in found.headers] == ["V (m/s)", "roof", "C"]
+    assert found.given[0] == ("70", "70", "150 mph")
 
 
 @pytest.mark.parametrize(
@@ -157,8 +169,8 @@ def test_cases_are_rows_without_a_key(tmp_path: Path) -> None:
         ("V,C\n70 m/s,1\n70,1\n", ", line 3, column 'V'", "'70' has no unit"),
         ("V (m/s),C\n70,1\n,1\n", ", line 3, column 'V'", "the cell is empty"),
         ("W (m/s)\n70\n", ", line 1", "unknown column 'W'"),
-        ("V (m/s),C\n70\n", ", line 2, column 'V'", "the row has 1 cells"),
-        ("V (m/s);C\n70;0,8\n", ", line 2, column 'C'", "decimal comma"),
+        ("V (m/s),C\n70\n", ", line 2, column 'V'", "not as many cells (1)"),
+        ("V (m/s);C\n70;0,8\n", ", line 2, column 'C'", "a comma in the number '0,8'"),
     ],
 )
 def test_cases_that_do_not_fit_are_refused(
@@ -179,4 +191,5 @@ def test_100_000_cases_are_read_in_seconds(tmp_path: Path) -> None:
     start = time.perf_counter()
     cases = read_cases(path, names)
     assert time.perf_counter() - start < 5
-    assert (len(cases), cases[-1]["n"], cases[-1]["V"]) == (100_000, "99999", "9.5 m/s")
+    last = {name: cells[-1] for name, cells in cases.entries.items()}
+    assert (len(cases), last["n"], last["V"]) == (100_000, "99999", "9.5 m/s")

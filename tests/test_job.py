@@ -11,7 +11,7 @@ from pathlib import Path
 import pytest
 
 from calcbook.errors import JobError, RecordError
-from calcbook.job import Job, template_folder, templates
+from calcbook.job import Job, find_notebook, template_folder, templates
 from calcbook.record import EntryRecord, Record
 
 
@@ -182,6 +182,28 @@ def test_unknown_workbook_of_a_job_is_refused(job: Job) -> None:
         job.notebook("wind-presure")
 
 
+def test_notebook_the_job_does_not_list_is_refused(job: Job) -> None:
+    """A notebook of the folder is not passed over for a template: it is to be listed first."""
+    for name in ("sign-board", "wind-pressure"):
+        notebook(job.folder / f"{name}.ipynb", opening(name))
+    (job.folder / "job.toml").write_text('format = 1\nworkbooks = ["design-basis"]\n')
+    shorter = Job.load(job.folder)
+    for name in ("sign-board", "wind-pressure"):
+        message = f"does not list {name}.ipynb\nadd '{name}' to the list of workbooks in job.toml"
+        with pytest.raises(JobError, match=message):
+            find_notebook(name, shorter)
+
+
+def test_workbook_named_with_its_folder_is_refused(
+    job: Job, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """A job's folder in the name, or in its place, is answered with where to go."""
+    monkeypatch.chdir(job.folder.parent)
+    for name in ("clinic/wind-pressure", "clinic"):
+        with pytest.raises(JobError, match=f"no workbook '{name}'\n.* first: cd clinic$"):
+            find_notebook(name, None)
+
+
 def test_records_lie_beside_the_notebooks(job: Job) -> None:
     """A workbook and mark have their record in the job's folder; marks come as B2 before B10."""
     for mark in ("B10", "B2", "C-3.1", "A"):
@@ -194,6 +216,21 @@ def test_records_lie_beside_the_notebooks(job: Job) -> None:
     assert job.marks("floor-beam") == ("A", "B2", "B10", "C-3.1")
     assert job.marks("wind-pressure") == ()
     assert job.record("floor-beam", "B2").entries == {"L": EntryRecord("6 m")}
+
+
+def test_fillings_are_every_mark_of_every_workbook(job: Job) -> None:
+    """A workbook without marks has one filling; with marks one each, and its own where recorded."""
+    for mark in ("B10", "B2"):
+        record = job.record("floor-beam", mark)
+        record.change(entries={"L": EntryRecord("6 m")})
+        record.save()
+    beams = [f for f in job.fillings() if f[0] == "floor-beam"]
+    assert beams == [("floor-beam", "B2"), ("floor-beam", "B10")]
+    assert [f for f in job.fillings() if f[0] == "wind-pressure"] == [("wind-pressure", None)]
+    record = job.record("floor-beam")
+    record.change(entries={"L": EntryRecord("7 m")})
+    record.save()
+    assert ("floor-beam", None) in job.fillings()
 
 
 def test_file_that_only_looks_like_a_record_is_named(job: Job) -> None:

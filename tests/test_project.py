@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import ast
 import json
 import re
 import subprocess
@@ -32,6 +33,34 @@ def test_importing_the_package_stays_light() -> None:
         [sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=TOP
     )
     assert done.stdout.strip() == "[]"
+
+
+def imported(path: Path) -> set[str]:
+    """Return the modules of the package that a module imports as it is loaded."""
+    found: set[str] = set()
+    for node in ast.parse(path.read_text(encoding="utf-8")).body:
+        if isinstance(node, ast.ImportFrom) and node.module == "calcbook":
+            found |= {name.name for name in node.names}
+        elif isinstance(node, ast.ImportFrom) and (node.module or "").startswith("calcbook."):
+            found.add(str(node.module).split(".")[1])
+    return found
+
+
+def test_imports_run_one_way() -> None:
+    """Every module stands in the table of DEVELOPERS.md and imports from no row below its own."""
+    guide = (TOP / "DEVELOPERS.md").read_text(encoding="utf-8").split("## The house")[1]
+    rows = [line.split("|")[1] for line in guide.split("##")[0].splitlines() if "| `" in line]
+    row = {name: n for n, cell in enumerate(rows) for name in re.findall("`(.+?)`", cell)}
+    package = Path(calcbook.__file__).parent
+    loaded = {
+        path: path.relative_to(package).parts[0].removesuffix(".py")
+        for path in package.rglob("*.py") if path != package / "__init__.py"
+    }  # fmt: skip
+    assert set(loaded.values()) == set(row)
+    assert [
+        f"{path.name} imports {other}"
+        for path, name in loaded.items() for other in imported(path) if row[other] > row[name]
+    ] == []  # fmt: skip
 
 
 def test_ci_runs_the_test_command_of_the_readme() -> None:

@@ -7,8 +7,8 @@ import books
 import pytest
 
 from calcbook.errors import CalcbookError, CarryError, InputError, JobError
-from calcbook.job import Job
-from calcbook.run import Filling, Runner, find_notebook, item_digest
+from calcbook.job import Job, find_notebook
+from calcbook.run import Filling, Runner, item_digest
 
 if TYPE_CHECKING:
     from collections.abc import Sequence

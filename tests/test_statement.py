@@ -16,7 +16,7 @@ from hypothesis import strategies as st
 from calcbook import typeset
 from calcbook.inputs import Carried, Given
 from calcbook.run import Filling, Runner
-from calcbook.statement import schema
+from calcbook.statement import schema, twelve_digits
 from calcbook.units import unit
 
 if TYPE_CHECKING:
@@ -96,11 +96,11 @@ def test_a_schedule_with_totals_and_the_governing_row_in_full() -> None:
     assert columns["v"]["si"] == [6.0, 2.0, 10.0]
     assert columns["u"]["total"]["text"] == "12.000"
     assert (item["governing"]["row"], item["governing"]["why"]) == ("R2", "largest v")
-    names = [line["name"] for line in item["governing"]["lines"]]
-    assert names == ["u", "v"]
-    worked = item["governing"]["lines"][0]
-    assert worked["values"] == {"w": {"text": "2", "unit": "m"}}
-    assert worked["value"]["text"] == "4.000"
+    worked = [(line["row"], line["name"]) for line in item["governing"]["lines"]]
+    assert worked == [("R2", "u"), ("R2", "v"), ("R1", "u"), ("R1", "v"), ("R0", "u")]
+    first = item["governing"]["lines"][0]
+    assert first["values"] == {"w": {"text": "2", "unit": "m"}}
+    assert first["value"]["text"] == "4.000"
     assert [e["row"] for e in item["envelope"]] == ["R2", "R1", "R0"]
     assert found["t"]["value"]["si"] == 12.0 + 6.0 - 1.0
 
@@ -152,7 +152,10 @@ def check(text: str, **entries: str) -> dict[str, Any]:
         ("a < b", "3.9999", "4", True, "0.99998"),
         ("a >= b", "5", "4", True, "0.80"),
         ("a >= b", "3.999", "4", False, "1.0003"),
-        ("a > b", "7.2", "0", True, "0.00"),
+        ("a > b", "7.2", "0", True, ""),
+        ("a <= b", "0", "4", True, ""),
+        ("a >= b", "0", "0", True, ""),
+        ("a <= b", "1", "1e-320", False, ""),
         ("a >= b", "-5", "-8", True, "0.63"),
         ("a >= b", "-9", "-8", False, "1.13"),
         ("a <= b", "-5", "-3", True, "0.60"),
@@ -168,6 +171,17 @@ def test_verdicts_and_ratios(text: str, a: str, b: str, held: bool, ratio: str |
     assert found["satisfied"] is held
     if ratio is not None:
         assert found["ratio_text"] == ratio
+
+
+def test_words_left_empty_wait_for_nobody() -> None:
+    """An empty text is an entry that needs no confirmation; one with words in it does."""
+    book = books.book({"seen_by": ""})
+    with book.section("S") as s:
+        s.text("job_name", "Job", "Clinic")
+        s.text("seen_by", "Seen by")
+        s.entry("V", "Speed", "40 m/s", unit="speed")
+    counts = book.statement()["counts"]
+    assert (counts["entries"], counts["unconfirmed"]) == (3, 2)
 
 
 @settings(max_examples=200, deadline=None)
@@ -298,7 +312,10 @@ def test_same_inputs_give_the_same_bytes_in_any_process() -> None:
 
 
 def test_numbers_carry_twelve_digits() -> None:
-    """JSON values have twelve significant digits, in SI and in their unit."""
+    """A statement holds full doubles; as JSON it has twelve significant digits everywhere."""
     value = books.item(books.lines("x = a/3", entries={"a:length": "1 ft"}), "x")["value"]
-    assert value["si"] == float(f"{0.3048 / 3:.12g}")
-    assert value["value"] == float(f"{0.3048 / 3 / unit(value['unit']).factor:.12g}")
+    assert value["si"] == 0.3048 / 3
+    assert twelve_digits([value])[0]["si"] == float(f"{0.3048 / 3:.12g}")
+    assert twelve_digits([value])[0]["value"] == float(
+        f"{0.3048 / 3 / unit(value['unit']).factor:.12g}"
+    )

@@ -114,10 +114,7 @@ HILL = (
             ("hill != 'none' and H/L_h >= 0.2 and H >= H_min", "(1 + K_1*K_2*K_3)**2"),
             ("hill == 'none' or H/L_h < 0.2 or H < H_min", "1.0"),
         ),
-        note=(
-            "Whether the hill is isolated, stands clear of its surroundings and carries the "
-            "building on its upper half is for the engineer to judge. Limits from memory."
-        ),
+        note="The engineer judges if the hill stands alone, with the building on its upper half.",
         from_memory=True,
     ),
 )

@@ -14,9 +14,8 @@ from typing import TYPE_CHECKING, Self, TextIO
 from calcbook.csvrows import as_rows, read_table
 from calcbook.errors import InputError, UsageError
 from calcbook.items import Carry, Choice, Entry
-from calcbook.job import Job
+from calcbook.job import Job, find_notebook
 from calcbook.record import check_mark
-from calcbook.run import find_notebook
 from calcbook.units import DIMENSIONLESS
 from calcbook.workbook import entered_columns
 

@@ -10,40 +10,39 @@ import os
 import re
 import subprocess
 import sys
-from contextlib import suppress
+from contextlib import contextmanager, suppress
 from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress, Steps
 from calcbook.diskfile import in_plain_words, write_whole
 from calcbook.errors import InputError, JobError
-from calcbook.job import Job, template_folder, templates
+from calcbook.job import BASIS, Job, template_folder, templates
 from calcbook.record import EntryRecord
-from calcbook.run import BASIS, Filling, Runner
+from calcbook.run import Filling, Runner, all_items
 
 if TYPE_CHECKING:
     from argparse import Namespace
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Iterator, Mapping, Sequence
     from pathlib import Path
 
 FIRST = (BASIS, "dead-load-take-off", "wind-pressure")
 ISSUE_DATE = "issue_date"
 _PAGE = re.compile(rb"/Type\s*/Page\b")
 _UNFIT = re.compile(r"[^\w.-]+")
+_LONGEST_NAME = 60
 
 
 def start(arguments: Namespace) -> int:
     """Make a new job folder with every template, and say what comes next."""
     folder: Path = arguments.folder
     found = templates()
-    job = Job.start(folder, _order(list(found)), found)
-    try:
+    with _nothing_left_of(folder) as made:
+        job = Job.start(folder, _order(list(found)), found)
+        made.extend(_files(job))
         with Progress() as progress:
             progress("preparing the design basis")
             _date_issue(job)
-    except BaseException:
-        _take_out(job)
-        raise
     print(f"started a job in {folder}: {', '.join(job.workbooks)}")
     print("next:")
     print(f"  cd {folder}")
@@ -71,16 +70,28 @@ def _date_issue(job: Job) -> None:
         record.save()
 
 
-def _take_out(job: Job) -> None:
-    """Take a job just made out again, so that a command that failed has written nothing."""
-    made = [job.folder / "job.toml", *(job.notebook(w) for w in job.workbooks)]
-    made += [job.record_path(w) for w in job.workbooks]
-    made += [path.with_name(f".{path.name}.lock") for path in made]
-    for path in made:
-        with suppress(OSError):
-            path.unlink(missing_ok=True)
-    with suppress(OSError):
-        job.folder.rmdir()
+@contextmanager
+def _nothing_left_of(folder: Path) -> Iterator[list[Path]]:
+    """Take out the files noted in the list, and the folders that were not there, on failure."""
+    folders = [path for path in (folder, *folder.parents) if not path.exists()]
+    made: list[Path] = []
+    try:
+        yield made
+    except BaseException:
+        for path in made:
+            with suppress(OSError):
+                path.unlink(missing_ok=True)
+        for path in folders:
+            with suppress(OSError):
+                path.rmdir()
+        raise
+
+
+def _files(job: Job) -> list[Path]:
+    """Return the files a new job may have, those that guard its records included."""
+    found = [job.folder / "job.toml", *(job.notebook(w) for w in job.workbooks)]
+    found += [job.record_path(w) for w in job.workbooks]
+    return found + [path.with_name(f".{path.name}.lock") for path in found]
 
 
 def open_job(arguments: Namespace) -> int:
@@ -91,14 +102,23 @@ def open_job(arguments: Namespace) -> int:
                        hint="install it with: python -m pip install jupyterlab")  # fmt: skip
     folder = job.folder.resolve()
     words = [sys.executable, "-m", "jupyterlab", "--LabApp.news_url=None",
-             f"--ServerApp.root_dir={folder}"]  # fmt: skip
+             f"--ServerApp.root_dir={folder}", *arguments.passed]  # fmt: skip
     print(f"opening {folder} in JupyterLab; press Ctrl-C here to close it", flush=True)
     with subprocess.Popen(words, env={**os.environ, "CALCBOOK_JOB": str(folder)}) as server:  # noqa: S603  our own interpreter
         while True:
             with suppress(KeyboardInterrupt):  # JupyterLab gets it as well, and asks
-                if server.wait() != 0:
-                    raise JobError("JupyterLab stopped", hint="its messages stand above")
+                if status := server.wait():
+                    raise JobError(f"JupyterLab stopped with status {status}",
+                                   hint=_why_stopped(arguments))  # fmt: skip
                 return 0
+
+
+def _why_stopped(arguments: Namespace) -> str:
+    as_root = getattr(os, "geteuid", lambda: None)() == 0  # there is no root on Windows
+    if as_root and "--allow-root" not in arguments.passed:
+        return ("as root it starts only when told so: "
+                f"calcbook open {arguments.folder} -- --allow-root")  # fmt: skip
+    return "its messages stand above"
 
 
 def demo(arguments: Namespace) -> int:
@@ -106,21 +126,16 @@ def demo(arguments: Namespace) -> int:
     folder: Path = arguments.folder
     steps = Steps(sys.stdout)
     steps(f"job folder {folder}")
-    found = templates()
-    job = Job.start(folder, _order(list(found)), found)
-    made: list[Path] = []
-    try:
+    source = template_folder() / "demo"  # its notebooks hold the outputs of the filled records
+    found = {path.stem: path for path in sorted(source.glob("*.ipynb"))}
+    with _nothing_left_of(folder) as made:
+        job = Job.start(folder, _order(list(found)), found)
+        made.extend(_files(job))
         with in_plain_words(folder, JobError):
-            for path in sorted((template_folder() / "demo").glob("*.toml")):
+            for path in sorted(source.glob("*.toml")):
                 made.append(folder / path.name)
                 write_whole(made[-1], path.read_bytes())
         status = _make_pack(job, None, steps, made)
-    except BaseException:
-        for path in made:
-            with suppress(OSError):
-                path.unlink(missing_ok=True)
-        _take_out(job)
-        raise
     print(f"look at it with: calcbook open {folder}")
     return status
 
@@ -138,19 +153,33 @@ def _make_pack(job: Job, output: Path | None, steps: Steps, made: list[Path]) ->
     """
     from calcbook.pack.package import pack_job  # noqa: PLC0415  the pack's libraries are slow
 
-    pdf, statements = pack_job(job, progress=steps)
+    def save(pdf: bytes) -> None:
+        path = output or job.folder / f"{_file_name(job)}.pdf"
+        made.append(path)
+        with in_plain_words(path, JobError):
+            write_whole(path, pdf)
+
+    packed = pack_job(job, steps, save)
     steps.done()
-    path = output or job.folder / f"{_file_name(job)}.pdf"
-    made.append(path)
-    with in_plain_words(path, JobError):
-        write_whole(path, pdf)
-    print(f"{path}: {len(_PAGE.findall(pdf))} pages")
-    return _stands(statements)
+    print(f"{made[-1]}: {len(_PAGE.findall(packed.pdf))} pages")
+    if packed.moved:
+        print("carried values that moved since they were last taken:")
+    for text in packed.moved:
+        print(f"  {text}")
+    return _stands(packed.statements)
 
 
 def _file_name(job: Job) -> str:
-    """Return the job number as a file's name, or the folder's name when there is none."""
-    return _UNFIT.sub("-", job.number).strip("-.") or job.folder.resolve().name
+    """Return number and revision of a job as a file's name, or its folder's name without one."""
+    words = {"job_number": "", "revision": ""}
+    if BASIS in job.workbooks:
+        for item in all_items(Runner(job).statement(BASIS)):
+            if item["name"] in words and item["kind"] == "text":
+                words[item["name"]] = _UNFIT.sub("-", item["text"]).strip("-.")[:_LONGEST_NAME]
+    number, revision = words.values()
+    if not number:
+        return job.folder.resolve().name or "job"
+    return f"{number}-{revision}" if revision else number
 
 
 def _stands(statements: Sequence[Mapping[str, object]]) -> int:

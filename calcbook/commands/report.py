@@ -3,15 +3,17 @@
 from __future__ import annotations
 
 import textwrap
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from calcbook.commands import review
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
 from calcbook.typeset import Printed, equation, number
+from calcbook.wording import amount, verdict
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping, Sequence
 
-    Item = Mapping[str, object]
+    Item = Mapping[str, Any]
 
 WIDTH = 100
 MARGIN = "       "
@@ -59,20 +61,13 @@ def _wrapped(text: str, indent: str = MARGIN) -> list[str]:
     ]  # fmt: skip
 
 
-def _printed(value: object) -> str:
-    """Return a value of a statement with its unit."""
-    if not isinstance(value, dict) or not value["text"]:
-        return "no value"
-    return number(value["text"], value["unit"], "plain")
-
-
 def _entry(item: Item) -> list[str]:
-    value = _printed(item["value"]) if "value" in item else review.value_text(item) or "not given"
+    value = amount(item["value"]) if "value" in item else review.value_text(item) or "not given"
     if item.get("shown"):
-        value += f" ({_printed(item['shown'])})"
-    notes = [_origin(item), "" if _confirmed(item) else "unconfirmed"]
+        value += f" ({amount(item['shown'])})"
+    notes = [_origin(item), "unconfirmed" if is_unconfirmed(item) else ""]
     if item["kind"] == "carried" and item["stale"]:
-        taken: Mapping[str, object] = item["taken"] or {}  # type: ignore[assignment]
+        taken: Mapping[str, object] = item["taken"] or {}
         notes.append(f"was {taken.get('text', 'other')} when taken")
     note = "; ".join(n for n in notes if n)
     lines = _wrapped(f"{_head(item)}: {item['name']} = {value}{f'  [{note}]' if note else ''}")
@@ -82,12 +77,8 @@ def _entry(item: Item) -> list[str]:
 def _origin(item: Item) -> str:
     if item["kind"] != "carried" or item["fallback"]:
         return ""
-    origin: Mapping[str, object] = item["from"]  # type: ignore[assignment]
+    origin: Mapping[str, object] = item["from"]
     return f"from {origin['workbook']} {origin['number'] or origin['name']}"
-
-
-def _confirmed(item: Item) -> bool:
-    return bool(item["confirmed"]) or (item["kind"] == "carried" and not item["fallback"])
 
 
 def _problem(item: Item) -> list[str]:
@@ -99,8 +90,8 @@ def _line(item: Item) -> list[str]:
     head = _wrapped(f"{_head(item)}{clause}")
     if item["problem"]:
         return [*head, f"{MARGIN}{item['name']} = {item['formula']}", *_problem(item)]
-    values: Mapping[str, Mapping[str, str]] = item["values"]  # type: ignore[assignment]
-    value: Mapping[str, str] = item["value"]  # type: ignore[assignment]
+    values: Mapping[str, Mapping[str, str]] = item["values"]
+    value: Mapping[str, str] = item["value"]
     parts = equation(
         str(item["name"]), str(item["formula"]), "plain",
         {name: Printed(v["text"], v["unit"]) for name, v in values.items()},
@@ -124,11 +115,11 @@ def _at_equals(parts: Sequence[str]) -> list[str]:
 
 
 def _check(item: Item) -> list[str]:
-    verdict = review.verdict(item)
-    facts = f"{_printed(item['demand'])} {item['relation']} {_printed(item['limit'])}"
+    sides = f"{amount(item['demand'])} {item['relation']} {amount(item['limit'])}"
     ratio = f", ratio {item['ratio_text']}" if item["ratio_text"] else ""
-    shown = "" if item["problem"] or not item["relation"] else f": {facts}{ratio}"
-    return [*_wrapped(_head(item)), f"{MARGIN}{item['text']}{shown}, {verdict}", *_problem(item)]
+    shown = "" if item["problem"] or not item["relation"] else f": {sides}{ratio}"
+    told = f"{MARGIN}{item['text']}{shown}, {verdict(item)}"
+    return [*_wrapped(_head(item)), told, *_problem(item)]
 
 
 def _remark(item: Item) -> list[str]:
@@ -151,15 +142,15 @@ def _error(item: Item) -> list[str]:
 
 def _schedule(item: Item) -> list[str]:
     lines = [*_wrapped(_head(item)), *_problem(item)]
-    for error in item["errors"]:  # type: ignore[attr-defined]
+    for error in item["errors"]:
         lines += textwrap.indent(error, MARGIN).split("\n")
-    columns = [c for c in item["columns"] if c["applies"]]  # type: ignore[attr-defined]
-    rows: Sequence[str] = item["rows"]  # type: ignore[assignment]
+    columns = [c for c in item["columns"] if c["applies"]]
+    rows: Sequence[str] = item["rows"]
     if rows:
         lines += _grid([_keys(item), *map(_cells, columns)])
     for column in columns:
         lines += _formula(column)
-    governing: Mapping[str, object] | None = item["governing"]  # type: ignore[assignment]
+    governing: Mapping[str, object] | None = item["governing"]
     if governing:
         lines.append(f"{MARGIN}governing row {governing['row']} ({governing['why']}):")
         for line in governing["lines"]:  # type: ignore[attr-defined]
@@ -168,13 +159,11 @@ def _schedule(item: Item) -> list[str]:
 
 
 def _keys(item: Item) -> tuple[bool, list[str]]:
-    rows: list[str] = item["rows"]  # type: ignore[assignment]
-    confirmed: list[str] = item["confirmed"]  # type: ignore[assignment]
-    marked = [
-        key if item["fixed"] or by else f"{key} *" for key, by in zip(rows, confirmed, strict=False)
-    ]
-    has_total = any(c["total"] for c in item["columns"])  # type: ignore[attr-defined]
-    return False, [str(item["key"]), "", *(marked or rows), *(["total"] if has_total else [])]
+    rows: list[str] = item["rows"]
+    waiting = unconfirmed_rows(item)
+    marked = [f"{key} *" if key in waiting else key for key in rows]
+    has_total = any(c["total"] for c in item["columns"])
+    return False, [str(item["key"]), "", *marked, *(["total"] if has_total else [])]
 
 
 def _cells(column: Mapping[str, object]) -> tuple[bool, list[str]]:

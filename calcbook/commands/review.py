@@ -5,35 +5,19 @@ from __future__ import annotations
 from typing import TYPE_CHECKING
 
 from calcbook.run import all_items
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import counted
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
 
-    from calcbook.job import Job
-
-_ENTERED = frozenset({"entry", "choice", "text"})
+ISSUE = ("job_number", "prepared_by", "issue_date")
 _FOLLOWS = "not available because of "
-
-
-def fillings(job: Job) -> list[tuple[str, str | None]]:
-    """Return every workbook of a job with each of its marks, in the order of the pack."""
-    found: list[tuple[str, str | None]] = []
-    for workbook in job.workbooks:
-        marks = job.marks(workbook)
-        if not marks or job.record_path(workbook).exists():
-            found.append((workbook, None))
-        found += [(workbook, mark) for mark in marks]
-    return found
 
 
 def checks(statement: Mapping[str, object]) -> list[Mapping[str, object]]:
     """Return the checks that apply, in order."""
     return [i for i in all_items(statement) if i["kind"] == "check" and i["applies"]]
-
-
-def verdict(check: Mapping[str, object]) -> str:
-    """Return the verdict of a check in words."""
-    return {True: "satisfied", False: "NOT SATISFIED"}.get(check["satisfied"], "undecided")  # type: ignore[call-overload,no-any-return]
 
 
 def not_satisfied(statement: Mapping[str, object]) -> bool:
@@ -47,29 +31,36 @@ def unconfirmed(statement: Mapping[str, object]) -> list[str]:
     for item in all_items(statement):
         if not item["applies"]:
             continue
-        entered = item["kind"] in _ENTERED or (item["kind"] == "carried" and item["fallback"])
-        if entered and not item["confirmed"]:
+        if is_unconfirmed(item):
             found.append(str(item["name"]))
-        if item["kind"] == "schedule" and not item["fixed"]:
-            rows: list[str] = item["rows"]
-            by: list[str] = item["confirmed"]
-            keys = [key for key, initials in zip(rows, by, strict=True) if not initials]
-            found += [f"{item['name']} ({', '.join(keys)})"] if keys else []
+        if keys := unconfirmed_rows(item):
+            found.append(f"{item['name']} ({', '.join(keys)})")
     return found
 
 
 def stale(statement: Mapping[str, object]) -> list[str]:
-    """Return the carried values whose source has moved, old and new."""
+    """Return the carried values whose source has moved, old and new; of rows only that they did.
+
+    A schedule that has the rows of another one has no source of its own, and is not named.
+    """
     found = []
     for item in all_items(statement):
-        if not item.get("stale"):
+        origin: Mapping[str, object] | None = item.get("from")
+        if not item.get("stale") or origin is None:
             continue
-        origin: Mapping[str, object] = item["from"]
         taken: Mapping[str, object] = item.get("taken") or {}
-        old = f"{taken['text']} -> " if taken else "changed, now "
-        found.append(f"{item['name']} from {origin['workbook']}.{origin['name']}: "
-                     f"{old}{value_text(item)}")  # fmt: skip
+        now = value_text(item)
+        moved = f"{taken['text']} -> {now}" if taken else f"{now}, changed since taken"
+        found.append(f"{item['name']} from {origin['workbook']}.{origin['name']}: {moved}")
     return found
+
+
+def nothing_entered(statement: Mapping[str, object]) -> list[str]:
+    """Return which of the words a package cannot be issued without are empty."""
+    return [
+        str(item["name"]) for item in all_items(statement)
+        if item["kind"] == "text" and item["applies"] and item["name"] in ISSUE and not item["text"]
+    ]  # fmt: skip
 
 
 def value_text(item: Mapping[str, object]) -> str:
@@ -79,7 +70,7 @@ def value_text(item: Mapping[str, object]) -> str:
         return f"{value['text']} {value['unit']}".rstrip()
     if "rows" in item:
         rows: list[str] = item["rows"]  # type: ignore[assignment]
-        return f"{len(rows)} rows: {', '.join(rows)}"
+        return counted(len(rows), "row")
     return str(item.get("option") or item.get("text") or "")
 
 

@@ -4,6 +4,7 @@
 
 from __future__ import annotations
 
+import csv
 import json
 import sys
 from typing import TYPE_CHECKING
@@ -19,8 +20,9 @@ from calcbook.commands.common import (
     read_rows,
 )
 from calcbook.commands.report import text_report
-from calcbook.csvrows import read_cases
+from calcbook.csvrows import CaseTable, Header, read_cases
 from calcbook.errors import CalcbookError, JobError, near_match
+from calcbook.job import template_folder
 from calcbook.run import Filling, Runner, all_items
 from calcbook.statement import twelve
 
@@ -43,6 +45,7 @@ def run(arguments: Namespace) -> int:
     """
     target = find_target(arguments.workbook)
     _refuse_unknown_mark(target)
+    _say_whose(target)
     sets = assignments(arguments.set)
     filling = Filling(target.notebook, target.mark, sets=sets)
     with Progress() as progress:
@@ -70,6 +73,18 @@ def _refuse_unknown_mark(target: Target) -> None:
     if target.mark not in marks:
         hint = near_match(target.mark, marks) or f"it has: {', '.join(marks) or 'none'}"
         raise JobError(f"{name} has no mark '{target.mark}' in this job", hint=hint)
+
+
+def _say_whose(target: Target) -> None:
+    """Say on standard error when it is not a workbook of the job that is computed."""
+    job, notebook = target.job, target.notebook
+    if notebook.parent == template_folder():
+        who = "no job here" if job is None else f"this job has no {notebook.stem}"
+        print(f"{who}: the template's values are computed", file=sys.stderr)
+    elif job is not None and notebook.resolve().parent == job.folder.resolve():
+        hint = job.unlisted(notebook.stem)
+        if hint:
+            print(f"{notebook.stem} will not be in the package: {hint}", file=sys.stderr)
 
 
 def _say_troubles(name: str, troubles: Sequence[str]) -> None:
@@ -141,47 +156,51 @@ def _column(column: Mapping[str, object]) -> Plain:
 def _run_cases(book: Workbook, path: Path, progress: Progress, *, as_json: bool) -> int:
     progress(f"reading {path.name}")
     known = {name: needs_unit(item) for name, item in cases.entries(book).items()}
-    read = read_cases(path, known)
-    columns = {name: [case[name] for case in read] for name in read[0]}
+    table = read_cases(path, known)
     try:
-        progress(f"computing {len(read)} cases")
-        many, program = cases.read(book, columns), book.many()
+        progress(f"computing {len(table)} cases")
+        many, program = cases.read(book, table.entries), book.many()
         found = cases.compute(program, many.values, many.rows)
         results = cases.results(book, program, many, found)
     except CalcbookError as error:
         raise error.at(path.name) from None
     failed = cases.failing(program, many, found)
     progress("printing")
-    print(_cases_json(book, results) if as_json else _cases_csv(book, results))
-    for text, places in failed.items():
-        print(f"not satisfied: {text} in {len(places)} of {len(read)} cases, "
-              f"the first is case {places[0] + 1}", file=sys.stderr)  # fmt: skip
+    _print_cases(table, _in_units(book, results), as_json=as_json)
+    for bound, places in failed:
+        print(f"not satisfied: {bound.number} {bound.item.meaning}, {bound.item.formula}, "  # type: ignore[attr-defined]
+              f"in {len(places)} of {len(table)} cases, the first is case {places[0] + 1}",
+              file=sys.stderr)  # fmt: skip
     return 1 if failed else 0
 
 
-def _in_units(
-    book: Workbook, results: Mapping[str, np.ndarray]
-) -> list[tuple[str, str, list[str]]]:
-    """Return name, unit and values (12 significant digits; '' where not applied) of each result."""
+def _in_units(book: Workbook, results: Mapping[str, np.ndarray]) -> list[tuple[Header, list[str]]]:
+    """Return each result with its values (12 significant digits; '' where not applied)."""
     found = []
     for bound in cases.result_lines(book):
         kind = bound.item.kind  # type: ignore[attr-defined]
         unit = kind.si if book.system == "SI" else kind.us
         values = (results[bound.name] / unit.factor).tolist()
-        found.append((bound.name, unit.text, ["" if v != v else f"{v:.12g}" for v in values]))  # noqa: PLR0124  nan
+        texts = ["" if v != v else f"{v:.12g}" for v in values]  # noqa: PLR0124  nan
+        found.append((Header(bound.name, unit.text), texts))
     return found
 
 
-def _cases_csv(book: Workbook, results: Mapping[str, np.ndarray]) -> str:
-    columns = _in_units(book, results)
-    head = ",".join(f"{name} ({unit})" if unit else name for name, unit, _ in columns)
-    rows = map(",".join, zip(*(values for _, _, values in columns), strict=True))
-    return "\n".join([head, *rows])
-
-
-def _cases_json(book: Workbook, results: Mapping[str, np.ndarray]) -> str:
-    names = {
-        name: {"unit": unit, "values": [float(v) if v else None for v in values]}
-        for name, unit, values in _in_units(book, results)
-    }
-    return json.dumps({"names": names})
+def _print_cases(
+    table: CaseTable, results: Sequence[tuple[Header, list[str]]], *, as_json: bool
+) -> None:
+    """Print the columns given, as given, and beside them the results."""
+    given = list(zip(table.headers, table.given, strict=True))
+    if as_json:
+        print(json.dumps({
+            "entries": {h.name: {"unit": h.unit, "values": list(cells)} for h, cells in given},
+            "names": {
+                h.name: {"unit": h.unit, "values": [float(v) if v else None for v in texts]}
+                for h, texts in results
+            },
+        }))  # fmt: skip
+        return
+    headers, columns = zip(*given, *results, strict=True)
+    rows = csv.writer(sys.stdout, lineterminator="\n")
+    rows.writerow(headers)
+    rows.writerows(zip(*columns, strict=True))

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress, Target, assignments, find_target, read_rows
+from calcbook.commands.owner import owner_hint
 from calcbook.errors import (
     InputError,
     JobError,
@@ -18,8 +19,10 @@ from calcbook.errors import (
     UsageError,
 )
 from calcbook.items import Choice, Entry, Schedule, Text
+from calcbook.job import BASIS, JOB_NUMBER
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
-from calcbook.run import BASIS, Filling, Runner, carries
+from calcbook.run import Filling, Runner, carries
+from calcbook.wording import counted
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -30,19 +33,22 @@ if TYPE_CHECKING:
     from calcbook.job import Job
     from calcbook.workbook import Workbook
 
-JOB_NUMBER = "job_number"
 TRIES = 5  # a record that others keep changing is read again this often
 LONGEST_INITIALS = 12
 
 
 @dataclass(frozen=True)
 class Wish:
-    """What the command line asks for: entries and files of rows by name, and who confirms."""
+    """What the command line asks for: entries and files of rows by name, and who confirms.
+
+    ``source`` is where all of it comes from; None leaves the sources on record.
+    """
 
     job: Job
     target: Target
     sets: Mapping[str, str]
     files: Sequence[str]
+    source: str | None
     initials: str | None
 
 
@@ -55,7 +61,7 @@ class Change:
 
 
 def set_values(arguments: Namespace) -> int:
-    """Write entries and rows into the record of a job's workbook, and confirm them.
+    """Write entries and rows into the record of a job's workbook, state their source, confirm them.
 
     Nothing is written unless the workbook accepts all of it.
     """
@@ -65,9 +71,15 @@ def set_values(arguments: Namespace) -> int:
             "there is nothing to set",
             hint="write NAME=VALUE, --rows SCHEDULE=FILE.csv or --confirm INITIALS",
         )
+    if not sets and not arguments.rows and arguments.source is not None:
+        raise UsageError(
+            "--source says where what is set comes from, and nothing is set",
+            hint="write NAME=VALUE or --rows SCHEDULE=FILE.csv beside it",
+        )
     initials = None if arguments.confirm is None else _initials(arguments.confirm)
     target = find_target(arguments.workbook)
-    wish = Wish(_job_of(target, arguments.workbook), target, sets, arguments.rows, initials)
+    job, source = _job_of(target, arguments.workbook), arguments.source
+    wish = Wish(job, target, sets, arguments.rows, source and source.strip(), initials)
     with Progress() as progress:
         for _ in range(TRIES - 1):
             with suppress(RecordChangedError):
@@ -99,7 +111,7 @@ def _job_of(target: Target, argument: str) -> Job:
         raise JobError(
             f"'{argument}' is not a notebook of this job",
             where=str(job.folder),
-            hint=f"it has: {', '.join(job.workbooks)}",
+            hint=job.unlisted(stem) or f"it has: {', '.join(job.workbooks)}",
         )
     return job
 
@@ -113,8 +125,9 @@ def _attempt(wish: Wish, progress: Progress) -> None:
     record = job.record(notebook.stem, mark)
     before = {name: entry.value for name, entry in record.entries.items()}
     filling = Filling(notebook, mark, sets=wish.sets, record=record)
-    book, statement = Runner(job, progress).run(filling)
-    _refuse_carried(book, job, [*wish.sets, *assignments(wish.files)])
+    runner = Runner(job, progress)
+    book, statement = runner.run(filling)
+    _refuse_carried(runner, book, [*wish.sets, *assignments(wish.files)])
     rows = read_rows(wish.files, book)
     change = _everything(book)
     if wish.sets or rows:
@@ -122,6 +135,7 @@ def _attempt(wish: Wish, progress: Progress) -> None:
             {n: _entry(record, n, book.accept(n, text)) for n, text in wish.sets.items()},
             {n: _rows(record, n, found) for n, found in rows.items()},
         )
+        _state_source(change, wish.source)
     if wish.initials is not None:
         _confirm(change, _stamp(wish, book, wish.initials))
     record.change(change.entries, change.rows)
@@ -135,16 +149,12 @@ def _attempt(wish: Wish, progress: Progress) -> None:
             print(f"not confirmed: {trouble}")
 
 
-def _refuse_carried(book: Workbook, job: Job, names: Sequence[str]) -> None:
+def _refuse_carried(runner: Runner, book: Workbook, names: Sequence[str]) -> None:
     origins = carries(book)
     for name in names:
-        workbook, _, source = origins.get(name, "").partition(".")
-        if workbook in job.workbooks:
-            raise InputError(
-                f"{name} is carried from {workbook}.{source}",
-                where=book.name,
-                hint=f"change it there: calcbook set {workbook} {source}=VALUE",
-            )
+        hint = owner_hint(runner, origins.get(name, ""))
+        if hint:
+            raise InputError(f"{name} is carried from {origins[name]}", where=book.name, hint=hint)
 
 
 def _entry(record: Record, name: str, text: str) -> EntryRecord:
@@ -167,6 +177,15 @@ def _rows(record: Record, name: str, rows: Sequence[RowRecord]) -> list[RowRecor
             old.confirmed if same and old else None,
         ))  # fmt: skip
     return found
+
+
+def _state_source(change: Change, source: str | None) -> None:
+    if source is None:
+        return
+    for entry in change.entries.values():
+        entry.source = source
+    for row in (row for rows in change.rows.values() for row in rows):
+        row.source = source
 
 
 def _everything(book: Workbook) -> Change:
@@ -221,9 +240,28 @@ def _tell(record: Record, change: Change, before: Mapping[str, str], wish: Wish)
     for name in wish.sets:
         value, old = change.entries[name].value, before.get(name)
         print(f"{name} = {value}" + (f"  (was {old})" if old not in (None, value) else ""))
-    for name, rows in change.rows.items():
-        print(f"{name}: {len(rows)} rows")
+    if wish.sets or wish.files:
+        for name, rows in change.rows.items():
+            print(f"{name}: {counted(len(rows), 'row')}")
+    else:
+        _list(change)
     if wish.initials is not None:
-        count = len(change.entries) + sum(map(len, change.rows.values()))
-        print(f"{count} confirmed by {wish.initials}")
+        count = sum(map(len, change.rows.values()))
+        every = (counted(len(change.entries), "entry"), counted(count, "row"))
+        told = [text for text in every if not text.startswith("0 ")]
+        print(f"{' and '.join(told) or 'nothing'} confirmed by {wish.initials}")
     print(f"written to {record.path.name}")
+
+
+def _list(change: Change) -> None:
+    """Print each entry and each row with its source, one to a line."""
+    for name, entry in change.entries.items():
+        print(f"{name} = {entry.value}{_in_brackets(entry.source)}")
+    for name, rows in change.rows.items():
+        for row in rows:
+            cells = ", ".join(f"{column} = {text}" for column, text in row.cells.items())
+            print(f"{name}, {row.key}: {cells}{_in_brackets(row.source)}")
+
+
+def _in_brackets(source: str) -> str:
+    return f"  ({source})" if source else ""

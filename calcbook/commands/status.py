@@ -10,8 +10,9 @@ from typing import TYPE_CHECKING
 from calcbook.commands import review
 from calcbook.commands.common import Progress
 from calcbook.errors import CalcbookError
-from calcbook.job import Job
+from calcbook.job import BASIS, Job
 from calcbook.run import Runner
+from calcbook.wording import verdict
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -28,7 +29,7 @@ def status(arguments: Namespace) -> int:
     checked = True
     with Progress() as progress:
         runner = Runner(job, progress)
-        for workbook, mark in review.fillings(job):
+        for workbook, mark in job.fillings():
             title = f"{workbook}:{mark}" if mark else workbook
             try:
                 statement = runner.statement(workbook, mark)
@@ -47,7 +48,7 @@ def status(arguments: Namespace) -> int:
 
 def summary(statement: Mapping[str, object]) -> str:
     """Return the checks of a statement counted by verdict, in words."""
-    found = [review.verdict(check) for check in review.checks(statement)]
+    found = [verdict(check) for check in review.checks(statement)]
     counts = [f"{found.count(word)} {word}" for word in dict.fromkeys(found)]
     return f"checks: {', '.join(counts)}" if counts else "no checks"
 
@@ -56,11 +57,13 @@ def _print(statement: Mapping[str, object], not_used: Sequence[str]) -> None:
     for check in review.checks(statement):
         if check["satisfied"] is not True:
             ratio = f", ratio {check['ratio_text']}" if check["ratio_text"] else ""
-            print(f"  {review.verdict(check)}: {check['number']} {check['meaning']}, "
+            print(f"  {verdict(check)}: {check['number']} {check['meaning']}, "
                   f"{check['text']}{ratio}")  # fmt: skip
     unconfirmed = review.unconfirmed(statement)
     if unconfirmed:
         print(f"  unconfirmed: {', '.join(unconfirmed)}")
+    if statement["workbook"] == BASIS and (empty := review.nothing_entered(statement)):
+        print(f"  nothing entered: {', '.join(empty)}")
     for text in review.stale(statement):
         print(f"  stale: {text}")
     if not_used:

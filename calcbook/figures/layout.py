@@ -7,6 +7,8 @@ from decimal import Decimal, InvalidOperation
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
+from calcbook.figures.lookup import MINUS
+
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
@@ -65,12 +67,12 @@ def difference(upper: str, lower: str) -> str | None:
     No digit is rounded away or added, so a reader who subtracts the two gets what is printed.
     """
     try:
-        exact = Decimal(upper) - Decimal(lower)
+        exact = Decimal(upper.replace(MINUS, "-")) - Decimal(lower.replace(MINUS, "-"))
     except InvalidOperation:
         return None
     if not exact.is_finite():
         return None
-    printed = format(exact, "f")
+    printed = format(exact, "f").replace("-", MINUS)
     return printed if len(printed) <= _LONGEST else None
 
 

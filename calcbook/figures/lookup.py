@@ -11,11 +11,15 @@ from typing import Any
 from calcbook.units import pretty_unit
 
 Record = Mapping[str, Any]
+MINUS = "\N{MINUS SIGN}"
 
 
 @dataclass(frozen=True)
 class Shown:
-    """A value as the statement prints it, with its magnitude in coherent SI for drawing."""
+    """A value as the statement prints it, with its magnitude in coherent SI for drawing.
+
+    What is printed as zero is drawn as zero.
+    """
 
     text: str
     unit: str
@@ -168,4 +172,9 @@ def _shown(name: str, value: Record, problem: str) -> Value:
     si = value.get("si")
     if problem or si is None or not math.isfinite(si):
         return Missing(name, problem or "it has no value")
-    return Shown(str(value["text"]), str(value.get("unit") or ""), float(si))
+    text = str(value["text"])
+    drawn = 0.0 if _ZERO.fullmatch(text) else float(si)
+    return Shown(text.replace("-", MINUS), str(value.get("unit") or ""), drawn)
+
+
+_ZERO = re.compile(r"[-+]?0*\.?0*(e[-+]?\d+)?")

@@ -34,9 +34,10 @@ from calcbook.figures.wind_roof import roof_pressures
 from calcbook.figures.wind_values import Level, Pressure, Wind, gather, sense
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Iterable, Mapping
 
     from calcbook.figures import lookup
+    from calcbook.figures.lookup import Value
     from calcbook.figures.sketch import Point
 
 NEEDS = ("levels", "z", "p_windward")
@@ -62,6 +63,7 @@ TAKES = (
 )
 
 _SAID_LEVELS = 8
+_TWO = 2
 _UNDER_ROOF = (0.215, 0.785)
 
 
@@ -271,12 +273,35 @@ def _wind_arrow(sketch: Sketch, y: float) -> None:
     sketch.area(outline, fill=PAPER, weight=0.9, gid="wind")
 
 
+def _open_arrows(wind: Wind) -> list[str]:
+    """Return what the open arrows of the figure are."""
+
+    def drawn(values: Iterable[Value]) -> bool:
+        return any(isinstance(value, Shown) and value.si for value in values)
+
+    found = []
+    if drawn(value for zone in wind.zones for value in zone.values[1:]):
+        more = max(len(zone.values) for zone in wind.zones) > _TWO
+        found.append(f"the roof's alternative {'2 and further' if more else '2'}")
+    if drawn(one.value for one in wind.leeward[1:]):
+        found.append("the further values of the leeward wall")
+    if drawn(one.value for one in wind.internal if one.both):
+        found.append("the internal pressure with the other sign")
+    elif drawn(one.value for one in wind.internal[1:]):
+        found.append("the further internal pressures")
+    return found
+
+
 def _legend(frame: Frame, wind: Wind) -> list[str]:
     """Return what a reader needs to know to read the arrows, and the sizes not dimensioned."""
     lengthened = any(frame.lengthened(value.si) for value, _ in wind.pressures())
     but = " but for the shortest" if lengthened else ""
     said = [f"Arrows toward a surface are positive, away from it negative; lengths to scale{but}."]
-    facing = {sense(one.value.si) for one in wind.side if isinstance(one.value, Shown)}
+    if opened := _open_arrows(wind):
+        said.append(f"Open arrows are {' and '.join(opened)}.")
+    facing = {
+        sense(one.value.si) for one in wind.side if isinstance(one.value, Shown) and one.value.si
+    }
     if "away" in facing:
         said.append("A dot is an arrow toward the reader, away from the near side wall.")
     if "toward" in facing:

@@ -10,7 +10,10 @@ from calcbook.figures.sketch import GREY, LIGHT, MARGIN, ROW, WIDTH, Sketch, tex
 from calcbook.figures.wind_frame import LONGEST, Frame, cell, pressure_arrow
 
 if TYPE_CHECKING:
+    from calcbook.figures.sketch import Point
     from calcbook.figures.wind_values import Wind, Zone
+
+_APART = 4.5
 
 
 def roof_pressures(sketch: Sketch, frame: Frame, wind: Wind) -> float:
@@ -19,8 +22,7 @@ def roof_pressures(sketch: Sketch, frame: Frame, wind: Wind) -> float:
     headed = frame.height + 2.0 * ROW + 4.0 if wind.levels else frame.height
     if not wind.zones:
         return max(floor, headed) + ROW
-    for number, zone in enumerate(wind.zones, start=1):
-        _zone_arrows(sketch, frame, zone, number)
+    tips = [_zone_arrows(sketch, frame, zone, n) for n, zone in enumerate(wind.zones, start=1)]
     count = max(len(zone.values) for zone in wind.zones)
     rooms = [
         max(map(text_width, (zone.label, *map(cell, zone.values)))) + 3.0 for zone in wind.zones
@@ -32,13 +34,14 @@ def roof_pressures(sketch: Sketch, frame: Frame, wind: Wind) -> float:
     edge = places[0] - rooms[0] / 2.0 - 1.0
     for row, words in enumerate(_row_names(count)):
         sketch.text(edge, bottom + (count - row) * ROW, words, align="right", ink=GREY)
-    for zone, centre, place in zip(wind.zones, centres, places, strict=True):
+    for zone, place, tip in zip(wind.zones, places, tips, strict=True):
         sketch.text(place, bottom + (count + 1) * ROW, zone.label, align="center", ink=GREY)
         for row, value in enumerate(zone.values):
             sketch.text(place, bottom + (count - row) * ROW, cell(value), align="center")
-        end = frame.roof(centre) + LONGEST + 1.0
         low = bottom + ROW - 2.4
-        sketch.line((place, low), (centre, low - 2.5), (centre, end), ink=LIGHT, weight=0.5)
+        above = (tip[0], min(low - 2.5, tip[1] + 6.0))
+        gid = f"leader-{zone.label}"
+        sketch.line((place, low), (place, low - 1.0), above, tip, ink=LIGHT, weight=0.5, gid=gid)
     return bottom + (count + 1) * ROW
 
 
@@ -49,20 +52,26 @@ def _row_names(count: int) -> list[str]:
     return [f"alternative {number}, {how}" for number, how in enumerate(drawn, start=1)]
 
 
-def _zone_arrows(sketch: Sketch, frame: Frame, zone: Zone, number: int) -> None:
-    """Draw a zone's limits and its arrows, square to the roof, alternatives side by side."""
+def _zone_arrows(sketch: Sketch, frame: Frame, zone: Zone, number: int) -> Point:
+    """Draw a zone's limits and, at its middle, its arrows square to the roof.
+
+    Alternatives stand side by side. Returns the upper end of the highest arrow, or a place on the
+    roof where there is none.
+    """
     begin, end = frame.along(zone.begin), frame.along(zone.end)
     for x in (begin, end):
         sketch.line((x, frame.roof(x)), (x, frame.roof(x) + 2.0), weight=0.5, ink=GREY)
-    repeats = max(1, int((end - begin) / 14.0))
-    slots = repeats * len(zone.values)
-    for slot in range(slots):
-        alternative = slot % len(zone.values)
-        value = zone.values[alternative]
-        if isinstance(value, Missing):
+    count = len(zone.values)
+    middle = (begin + end) / 2.0
+    step = min(_APART, (end - begin) / max(1, count))
+    ends = [(middle, frame.roof(middle))]
+    for place, value in enumerate(zone.values):
+        x = middle + (place - (count - 1) / 2.0) * step
+        if isinstance(value, Missing) or not value.si:
             continue
-        x = begin + (end - begin) * (slot + 0.5) / slots
-        gid = f"roof-{number}-{alternative + 1}-{slot + 1}"
-        place = (x, frame.roof(x))
-        square = frame.off_roof(x)
-        pressure_arrow(sketch, frame, place, square, value, gid=gid, dashed=alternative > 0)
+        surface, square = (x, frame.roof(x)), frame.off_roof(x)
+        gid = f"roof-{number}-{place + 1}"
+        pressure_arrow(sketch, frame, surface, square, value, gid=gid, dashed=place > 0)
+        length = frame.arrow_length(value.si)
+        ends.append((x + length * square[0], surface[1] + length * square[1]))
+    return max(ends, key=lambda point: point[1])

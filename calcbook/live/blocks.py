@@ -11,7 +11,18 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook import typeset
 from calcbook.live import wording
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import (
+    FROM_MEMORY,
+    OUTSIDE,
+    cases_told,
+    compared,
+    governs,
+    not_applied,
+    option_words,
+    symbols_in,
+    verdict,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator, Mapping
@@ -111,36 +122,59 @@ def blocks(section: Plain) -> Iterator[Block]:
     for item in section["items"]:
         yield block(item)
         if item["kind"] == "schedule" and item["applies"] and item.get("governing"):
-            row = item["governing"]["row"]
-            for line in item["governing"]["lines"]:
-                yield _line(line, within=f"{row}: ")
+            yield from _governing(item)
+
+
+def _governing(item: Plain) -> Iterator[Block]:
+    """Yield the lines worked in each governing row, under what the row governs."""
+    row = ""
+    for line in item["governing"]["lines"]:
+        if line["row"] != row:
+            row = line["row"]
+            yield Block("row", "", _row_heading(item, row))
+        yield _line(line, within=True)
+
+
+def _row_heading(item: Plain, row: str) -> Words:
+    words: Words = (Strong(f"Row {row}"),)
+    for which, column in governs(item, row):
+        words = (*words, f", {which} ", Symbol(column))
+    return words
+
+
+def phrase(text: str) -> Words:
+    """Return words of a workbook, with a symbol such as q_z among them set as a symbol."""
+    return tuple(Symbol(p) if is_symbol else p for p, is_symbol in symbols_in(text))
 
 
 def block(item: Plain) -> Block:
     """Return one item as a block; one that does not apply says why, and nothing else."""
     if not item["applies"]:
-        said = wording.not_applied(item)
-        return Block("idle", item["number"], (item["meaning"],), ((said,),), item=item)
+        said = phrase(not_applied(item))
+        if not item["meaning"]:
+            return Block("idle", item["number"], said, item=item)
+        return Block("idle", item["number"], phrase(item["meaning"]), (said,), item=item)
     return _SHAPES[item["kind"]](item)
 
 
 def _common(item: Plain) -> dict[str, Any]:
     notes: list[Words] = [(item["clause"],)] if item.get("clause") else []
-    notes += [(item["note"].rstrip("."),)] if item.get("note") else []
-    notes += [(Strong(wording.FROM_MEMORY),)] if item.get("memory") else []
+    notes += [phrase(item["note"].rstrip("."))] if item.get("note") else []
+    notes += [(Strong(FROM_MEMORY),)] if item.get("memory") else []
     return {
-        "kind": item["kind"], "number": item["number"], "words": (item["meaning"],), "item": item,
-        "notes": tuple(notes), "troubles": (item["problem"],) if item.get("problem") else (),
+        "kind": item["kind"], "number": item["number"], "item": item,
+        "words": phrase(item["meaning"]), "notes": tuple(notes),
+        "troubles": (item["problem"],) if item.get("problem") else (),
     }  # fmt: skip
 
 
 def _given(item: Plain, says: Words) -> Block:
     common = _common(item)
-    told = (wording.range_words(item), item.get("source"))
+    told = (wording.range_words(item), wording.source_words(item))
     common["notes"] += tuple((words,) for words in told if words)
     return Block(
         **common, says=(says,), standing=wording.standing(item),
-        unconfirmed=not item.get("confirmed"),
+        unconfirmed=is_unconfirmed(item) and not item.get("problem"),
     )  # fmt: skip
 
 
@@ -184,11 +218,9 @@ def _printed(value: Plain) -> typeset.Printed | None:
     return typeset.Printed(value["text"], value["unit"]) if value.get("text") else None
 
 
-def _line(item: Plain, within: str = "") -> Block:
+def _line(item: Plain, *, within: bool = False) -> Block:
     common = _common(item)
-    if within:
-        common["words"] = (within, item["meaning"])
-    says: tuple[Words, ...] = ((f"because {item['why']}",),) if item.get("why") else ()
+    says: tuple[Words, ...] = (phrase(f"because {item['why']}"),) if item.get("why") else ()
     spoken = [f"{name} in {unit}" for name, unit in item["takes"].items() if unit]
     if spoken:
         common["notes"] += ((f"as printed: {', '.join(spoken)}",),)
@@ -198,18 +230,18 @@ def _line(item: Plain, within: str = "") -> Block:
     equation = Equation(
         item["name"], item["formula"], values, _printed(item["value"]), bool(item["takes"])
     )
-    return Block(**common, says=says, equation=equation, within=bool(within))
+    return Block(**common, says=says, equation=equation, within=within)
 
 
 def _check(item: Plain) -> Block:
-    verdict = wording.verdict(item)
-    says: Words = (wording.compared(item), Strong(verdict))
+    sides = compared(item)
+    says: Words = (f"{sides}: " if sides else "", Strong(verdict(item)))
     return Block(**_common(item), says=((Relation(item["text"]),), says))
 
 
 def _remark(item: Plain) -> Block:
     common = _common(item)
-    common["words"] = (Strong(f"{item['tone'].capitalize()}."), " ", item["text"])
+    common["words"] = (Strong(f"{item['tone'].capitalize()}."), " ", *phrase(item["text"]))
     return Block(**common)
 
 
@@ -228,7 +260,7 @@ def _error(item: Plain) -> Block:
 def _table(item: Plain) -> Block:
     down, *across = item["axes"]
     common = _common(item)
-    common["notes"] += ((f"between points by straight lines; {wording.OUTSIDE[item['outside']]}",),)
+    common["notes"] += ((f"between points by straight lines; {OUTSIDE[item['outside']]}",),)
     if not across:
         heads = (_head(down["name"], down["unit"]), _head(item["name"], item["unit"]))
         cells = tuple(
@@ -260,7 +292,7 @@ def _schedule(item: Plain) -> Block:
     common["troubles"] += tuple(wording.schedule_troubles(item))
     return Block(
         **common, grid=schedule_grid(item), says=tuple(_legend(item)),
-        unconfirmed=not item["fixed"] and not all(item["confirmed"]),
+        unconfirmed=bool(unconfirmed_rows(item)),
     )  # fmt: skip
 
 
@@ -306,21 +338,38 @@ def _cell(column: Plain, place: int) -> Words:
 
 def _legend(item: Plain) -> Iterator[Words]:
     """Yield what the columns of numbers mean, then who governs."""
-    worked = {line["name"] for line in (item.get("governing") or {}).get("lines", ())}
+    worked = {
+        (line["name"], line["formula"]) for line in (item.get("governing") or {}).get("lines", ())
+    }
     for column in shown_columns(item):
-        if column["role"] in ("text", "choice"):
-            continue
-        words: Words = (Symbol(column["name"]), f": {column['meaning'] or column['name']}")
-        if column["formula"] and column["name"] not in worked:
-            words = (*words, ", ", Relation(column["formula"]))
-        if column["clause"]:
-            words = (*words, f" ({column['clause']})")
-        yield words
+        if column["role"] not in ("text", "choice"):
+            yield from _definitions(column, worked)
     for row in item.get("envelope") or ():
         value = row["value"]
         which = f"{row['which']} of the rows: "
         yield (Symbol(row["column"]), f", {which}", Amount(value["text"], value["unit"]),
                " in ", Strong(str(row["row"])))  # fmt: skip
+
+
+def _definitions(column: Plain, worked: set[tuple[str, str]]) -> Iterator[Words]:
+    """Yield a column's meaning, and its formula, or one by case, unless worked in full."""
+    name = column["name"]
+    words: Words = (Symbol(name), ": ", *phrase(column["meaning"] or name))
+    clause: Words = (f" ({column['clause']})",) if column["clause"] else ()
+    cases = cases_told(column)
+    formulas = [text for text, _ in cases] or [column["formula"]]
+    if not formulas[0] or all((name, text) in worked for text in formulas):
+        yield (*words, *clause)
+        return
+    if not cases:
+        yield (*words, ", ", Relation(column["formula"]), *clause)
+        return
+    yield (*words, *clause, ", by case:")
+    for text, conditions in cases:
+        line: Words = (Symbol(name), " = ", Relation(text), " where " if any(conditions) else " ")
+        for place, test in enumerate(conditions):
+            line = (*line, " or " if place else "", Relation(test) if test else "otherwise")
+        yield line
 
 
 _SHAPES: dict[str, Callable[[Plain], Block]] = {

@@ -11,8 +11,8 @@ from calcbook.errors import CalcbookError
 from calcbook.items import Carry, Choice, Text
 from calcbook.live import page
 from calcbook.live.session import refusal
-from calcbook.live.wording import APPLY, not_applied
-from calcbook.wording import option_label
+from calcbook.live.wording import APPLY
+from calcbook.wording import not_applied, option_label
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -193,7 +193,8 @@ class EntryField:
         say(self.words, page.words(block.words))
         toggle(self.widget, "cb-idle", on=not item["applies"])
         show_widget(self.line, on=item["applies"])
-        show_widget(self.mark, on=item["applies"] and self.session.job is not None)
+        given = item["applies"] and bool(block.standing) and self.session.job is not None
+        show_widget(self.mark, on=given and not self.control.refused)
         show_widget(self.back, on=self._typed_over(item))
         say(self.notes, page.notes(block.notes if self.session.job else block.remarks))
         if not item["applies"]:
@@ -254,9 +255,14 @@ class EntryField:
         self.session.bring_forward(self.item.name)
 
     def _told(self, reason: str) -> None:
-        """Show why something was not taken; what is in force was shown when it was computed."""
+        """Show why something was not taken; what is in force was shown when it was computed.
+
+        The mark would speak of the value in force, and not of the one seen in the field.
+        """
         if reason:
             say(self.message, page.refused(reason))
+        if self.control.refused:
+            show_widget(self.mark, on=False)
 
     def _state(self, item: Plain) -> str:
         """Return what the item in force has to say under its field."""

@@ -11,7 +11,8 @@ from typing import TYPE_CHECKING, Any
 from calcbook import figures, formula, typeset, units
 from calcbook.errors import CalcbookError
 from calcbook.live import blocks as parts
-from calcbook.live.wording import LEFT_OVER, not_applied
+from calcbook.live.wording import LEFT_OVER
+from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
     from collections.abc import Iterable, Mapping
@@ -75,12 +76,13 @@ class _Printer:
         return "\n\n".join(pieces) + "\n"
 
     def block(self, block: Block) -> str:
-        head = " ".join(p for p in (self.number(block.number), self.words(block.words)) if p)
+        number = self.number(block.number) if block.number else ""
+        head = " ".join(p for p in (number, self.words(block.words)) if p)
         notes = [self.words(note) for note in block.remarks]
         says = [self.words(line) for line in block.says]
         if block.kind in ("entry", "text", "choice", "carried", "check"):
             head, says = f"{head}: {'; '.join(says)}", []
-        if block.kind == "idle":
+        if block.kind == "idle" and says:
             head, says = f"{head} ({'; '.join(says)})", []
         if notes:
             head = f"{head} ({'; '.join(notes)})"

@@ -21,6 +21,7 @@ if TYPE_CHECKING:
     Plain = Mapping[str, Any]
 
 GIVEN = ("entry", "text", "choice", "carried")
+WIDE = ("remark", "figure", "schedule", "table", "error", "check", "row")
 _CLAUSE = re.compile(r"(?<![^\s(])[\w.]*\d-\d\w*")
 _WHOLE = r'<span class="cb-whole">\g<0></span>'
 
@@ -58,7 +59,7 @@ def math(code: str) -> str:
 def row(block: Block, statement: Plain) -> str:
     """Return a block as one row: number, words, body, margin."""
     body = _body(block, statement)
-    if block.kind in ("remark", "figure", "schedule", "table", "error", "check"):
+    if block.kind in WIDE or (block.kind == "idle" and not block.says):
         return _wide_row(block, body)
     kind = "entry" if block.kind in GIVEN else block.kind
     classes = f"cb-row cb-{kind}{' cb-within' if block.within else ''}"

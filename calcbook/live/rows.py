@@ -146,6 +146,11 @@ class _Row:
     def _told(self, column: str, reason: str) -> None:
         if reason:
             self.schedule.told(reason, f"{self.key}, {column}")
+        if self._refused():
+            show_widget(self.mark, on=False)
+
+    def _refused(self) -> bool:
+        return any(control.refused for control in self.controls)
 
     def _rename(self, typed: str, _bare: units.Unit | None) -> None:
         if typed.strip() != self.key:
@@ -188,7 +193,12 @@ class _Row:
         confirmed = place < len(item["confirmed"]) and bool(item["confirmed"][place])
         self._set_mark(on=confirmed)
         self.mark.tooltip = f"row {self.key}: {'confirmed' if confirmed else 'not confirmed'}"
-        show_widget(self.mark, on=self.session.job is not None)
+        faulty = any(
+            column["problem"] and column["problem"][place] and column["name"] in self.schedule.items
+            for column in parts.shown_columns(item)
+        )
+        marked = self.session.job is not None and not faulty and not self._refused()
+        show_widget(self.mark, on=marked)
 
     def _show_cell(self, control: Control, column: Plain, place: int) -> None:
         text = column["typed"][place] if column["typed"] else ""

@@ -18,10 +18,10 @@ from calcbook.errors import (
     RecordError,
     near_match,
 )
-from calcbook.job import Job
+from calcbook.job import BASIS, JOB_NUMBER, Job
 from calcbook.live import notebook, output
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
-from calcbook.run import BASIS, Filling, Runner, open_book
+from calcbook.run import Filling, Runner, open_book
 from calcbook.workbook import entered_columns
 
 if TYPE_CHECKING:
@@ -40,6 +40,7 @@ UNSIGNED = "type the job number and 'prepared by' in the design basis"
 SHOWN_NOW = "what the record says now is shown; type again to change it"
 WAIT_SECONDS = 2.0
 MARK = "CALCBOOK_MARK"
+PREPARED_BY = "prepared_by"
 
 
 @dataclass(frozen=True)
@@ -203,10 +204,10 @@ class Session:
         if self.job is None:
             return Signer("", "")
         basis = self.record if self.book.name == BASIS else self.job.record(BASIS)
-        found = {n: e.value for n, e in basis.entries.items() if n in ("job_number", "prepared_by")}
+        found = {n: e.value for n, e in basis.entries.items() if n in (JOB_NUMBER, PREPARED_BY)}
         if self.book.name == BASIS:
             found |= dict([entering])
-        return Signer(found.get("job_number", ""), found.get("prepared_by", ""))
+        return Signer(found.get(JOB_NUMBER, ""), found.get(PREPARED_BY, ""))
 
     def enter(self, name: str, text: str, *, bare: units.Unit | None = None) -> None:
         """Take a typed entry: read it strictly, write it confirmed, recompute.
@@ -215,20 +216,22 @@ class Session:
         """
         stored = self.book.accept(name, text, bare=bare)
         confirmed = self.signer((name, stored)).confirm(stored)
-        self._put(name, EntryRecord(stored, self._source(name), confirmed))
+        self._put(name, EntryRecord(stored, self._source(name, stored), confirmed))
 
     def confirm(self, name: str, *, yes: bool) -> None:
         """Confirm the value an entry has, or take the confirmation back."""
         value = self.book.readings.given[name].text
         confirmed = self.signer().sign(value) if yes else None
-        self._put(name, EntryRecord(value, self._source(name), confirmed))
+        self._put(name, EntryRecord(value, self._source(name, value), confirmed))
 
     def bring_forward(self, name: str) -> None:
         """Drop what was typed over a carried value."""
         self._put(name, None)
 
-    def _source(self, name: str) -> str:
-        return self.book.readings.given[name].source if name in self.book.readings.given else ""
+    def _source(self, name: str, value: str) -> str:
+        """Return the source in force, which another value does not have."""
+        given = self.book.readings.given.get(name)
+        return given.source if given is not None and given.text == value else ""
 
     def _put(self, name: str, item: EntryRecord | None) -> None:
         known = copy.deepcopy(self.record.entries.get(name))
@@ -281,7 +284,10 @@ class Session:
         stored = self.book.accept_cell(schedule, column, text, bare=bare)
 
         def change(rows: list[RowRecord]) -> None:
-            self._row(rows, key).cells[column] = stored
+            row = self._row(rows, key)
+            if row.cells.get(column) != stored:
+                row.source = ""
+            row.cells[column] = stored
 
         self._change_rows(schedule, change, key, column)
 
@@ -297,7 +303,6 @@ class Session:
                 raise InputError(f"there is a row '{new}' already", hint=hint)
             self._row(rows, key).key = new
 
-        self._typed[schedule, new] = self._typed.pop((schedule, key), set())
         self._change_rows(schedule, change, new, former=key)
 
     def add_row(self, schedule: str, below: str | None) -> None:
@@ -313,6 +318,7 @@ class Session:
     def remove_row(self, schedule: str, key: str) -> None:
         """Take a row out."""
         self._change_rows(schedule, lambda rows: rows.remove(self._row(rows, key)))
+        self._typed.pop((schedule, key), None)
 
     def confirm_row(self, schedule: str, key: str, *, yes: bool) -> None:
         """Confirm a row as it is, or take the confirmation back."""
@@ -341,15 +347,20 @@ class Session:
         self, schedule: str, change: Callable[[list[RowRecord]], None],
         key: str = "", column: str = "", former: str = "",
     ) -> None:  # fmt: skip
-        """Write rows changed; row ``key``, called ``former`` before, is confirmed if it stood."""
+        """Write rows changed; row ``key``, called ``former`` before, is confirmed if it stood.
+
+        So is a row all of whose cells were typed here.
+        """
         known = copy.deepcopy(self.record.schedules.get(schedule))
+        typed = self._typed.get((schedule, former or key), set()) | {column}
+        whole = set(entered_columns(self.book.schedule_item(schedule))) <= typed
 
         def apply() -> None:
             rows = self._rows(schedule)
             signer = self.signer()
             stood = {r.key for r in rows if signer.job and self.record.is_confirmed(r, signer.job)}
             change(rows)
-            if key and ((former or key) in stood or self._all_typed(schedule, key, column)):
+            if key and ((former or key) in stood or whole):
                 row = self._row(rows, key)
                 row.confirmed = signer.confirm(row_digest(row))
             self.record.change(schedules={schedule: rows})
@@ -359,12 +370,9 @@ class Session:
             apply,
             lambda: self.record.change(schedules={schedule: known}),
         )
-
-    def _all_typed(self, schedule: str, key: str, column: str) -> bool:
-        """Whether every cell of a row was typed here, which confirms it as a whole."""
-        typed = self._typed.setdefault((schedule, key), set())
-        typed.add(column)
-        return set(entered_columns(self.book.schedule_item(schedule))) <= typed
+        if key:
+            self._typed.pop((schedule, former), None)
+            self._typed[schedule, key] = typed
 
 
 def _opened_mark(name: str, marks: tuple[str, ...]) -> str | None:

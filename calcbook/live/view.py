@@ -12,7 +12,8 @@ from calcbook.live import blocks, page
 from calcbook.live.fields import EntryField, box, html, say, show_widget
 from calcbook.live.rows import ScheduleField, editable
 from calcbook.live.session import NO_JOB
-from calcbook.live.wording import LEFT_OVER, not_applied
+from calcbook.live.wording import LEFT_OVER
+from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping

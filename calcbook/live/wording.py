@@ -4,24 +4,15 @@ from __future__ import annotations
 
 from typing import TYPE_CHECKING, Any
 
-from calcbook import typeset
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
 
     Plain = Mapping[str, Any]
 
-FROM_MEMORY = "from memory: confirm against the code"
-OUTSIDE = {"hold": "outside them the value at the edge holds", "refuse": "not valid outside them"}
 APPLY = "Run all cells again to apply."
 LEFT_OVER = "The cell that declared this section was deleted or changed; run all cells again."
-
-
-def amount(value: Plain | None) -> str:
-    """Return a value with its unit as plain text, or that there is none."""
-    if not value or not value.get("text"):
-        return "not available"
-    return typeset.number(value["text"], value.get("unit", ""), "plain")
 
 
 def initials(confirmed: str) -> str:
@@ -30,9 +21,16 @@ def initials(confirmed: str) -> str:
 
 
 def standing(item: Plain) -> str:
-    """Return whether a value stands confirmed, and by whom."""
+    """Return whether a value stands confirmed, and by whom.
+
+    Returns '' where nothing is entered, or what is entered is refused.
+    """
+    if item.get("problem"):
+        return ""
     if item.get("confirmed"):
         return f"confirmed {initials(item['confirmed'])}"
+    if not is_unconfirmed(item):
+        return ""
     if item.get("fallback"):
         return "not confirmed: nothing was carried, the fallback serves"
     return "not confirmed"
@@ -41,6 +39,13 @@ def standing(item: Plain) -> str:
 def range_words(item: Plain) -> str:
     """Return the permitted range, or ''."""
     return f"range {item['range']}" if item.get("range") else ""
+
+
+def source_words(item: Plain) -> str:
+    """Return where a value comes from; that it is not said, for a value or an option."""
+    if item.get("source"):
+        return str(item["source"])
+    return "source not given" if item["kind"] in ("entry", "choice") else ""
 
 
 def origin_words(item: Plain) -> str:
@@ -56,31 +61,10 @@ def moved_words(item: Plain) -> str:
     return f"moved on: was {was} when taken" if was else "moved on since it was taken"
 
 
-def not_applied(item: Plain) -> str:
-    """Return that an item does not apply, and why."""
-    return f"not applied: {item['why']}" if item.get("why") else "not applied"
-
-
-def compared(item: Plain) -> str:
-    """Return demand, limit and ratio of a check, ending before the verdict."""
-    if item["satisfied"] is None:
-        return ""
-    demand, limit = item["demand"], item["limit"]
-    if not demand.get("text"):
-        return ""
-    ratio = f", ratio {item['ratio_text']}" if item.get("ratio_text") else ""
-    return f"demand {amount(demand)}, limit {amount(limit)}{ratio}: "
-
-
-def verdict(item: Plain) -> str:
-    """Return a check's verdict."""
-    return {True: "satisfied", False: "NOT SATISFIED", None: "not decided"}[item["satisfied"]]
-
-
 def rows_standing(item: Plain) -> Iterator[str]:
     """Yield which rows are confirmed and which are not."""
     rows = item["rows"]
-    waiting = [k for k, c in zip(rows, item["confirmed"], strict=False) if not c]
+    waiting = unconfirmed_rows(item)
     by = dict.fromkeys(initials(c) for c in item["confirmed"] if c)
     if by and rows:
         count = f": {len(rows) - len(waiting)} of {len(rows)} rows" if waiting else ""

@@ -11,6 +11,8 @@ from calcbook.pack.anchors import Anchors, items, printed_name
 from calcbook.pack.items import Writer, governing
 from calcbook.pack.nodes import Node, joined, numbers, phrase, words
 from calcbook.pack.repeats import Repeats
+from calcbook.statement import twelve_digits
+from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -86,7 +88,9 @@ def _attach(statements: list[Statement], files: dict[str, bytes]) -> list[dict[s
     attached = []
     for index, statement in enumerate(statements):
         file = f"statement-{index}.json"
-        text = json.dumps(statement, ensure_ascii=False, allow_nan=False, indent=1, sort_keys=True)
+        text = json.dumps(
+            twelve_digits(statement), ensure_ascii=False, allow_nan=False, indent=1, sort_keys=True
+        )
         files[file] = text.encode()
         name = ".".join(p for p in (statement["workbook"], statement.get("mark"), "json") if p)
         description = f"Statement of {printed_name(statement)}: every item as plain data"
@@ -194,14 +198,11 @@ def _section(part: dict[str, Any], label: str, writer: Writer) -> list[Node]:
         skipped = {}
         blocks.append(writer.block(item))
         if item["kind"] == "schedule":
-            blocks += [writer.block(line) for line in governing(item)]
+            for heading, lines in governing(item):
+                blocks.append({"t": "row", "c": heading})
+                blocks += [writer.block(line) for line in lines]
     return blocks + _skipped(skipped)
 
 
 def _skipped(skipped: dict[str, list[str]]) -> list[Node]:
     return [{"t": "skipped", "c": [f"{numbers(n)} ", *phrase(why)]} for why, n in skipped.items()]
-
-
-def not_applied(part: dict[str, Any]) -> str:
-    """Return why a section or an item is not applied, in words."""
-    return f"not applied: {part['why']}" if part.get("why") else "not applied"

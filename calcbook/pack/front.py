@@ -5,15 +5,17 @@ from __future__ import annotations
 import re
 from typing import TYPE_CHECKING, Any
 
-from calcbook.pack import nodes, prose
+from calcbook.pack import prose
 from calcbook.pack.anchors import items, printed_name
-from calcbook.pack.items import FROM_MEMORY, carried_words, judged, moved, verdict
-from calcbook.pack.nodes import Node, link, page, phrase, strong, symbol, typed, words
+from calcbook.pack.items import carried_words, moved, verdict
+from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
 from calcbook.pack.schedules import named
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed, unconfirmed_rows
+from calcbook.wording import FROM_MEMORY, amount, option_words
+from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Iterator
+    from collections.abc import Callable, Iterable, Iterator
 
     from calcbook.pack.anchors import Anchors, Item, Statement
     from calcbook.pack.cover import Cover
@@ -32,6 +34,7 @@ ABOUT = (
     "printed in them. Their statements, the complete plain data of every item, are attached to "
     "this file as JSON with results to 12 significant digits."
 )
+MOVED = "moved on since taken"
 LIMITS = f"""\
 Formulas are evaluated in double precision in coherent SI units. Printed values are rounded; \
 verdicts come from unrounded values. Entries are printed as typed and underlined, results in bold. \
@@ -110,22 +113,26 @@ def _counts(statements: list[Statement]) -> list[tuple[str, list[Node]]]:
         (failed, "check", "checks", verdict_word),
         (undecided, "check", "checks", "not decided"),
         (total("problems"), "item", "items", "with a problem, listed with the results"),
-        (total("stale"), "carried value", "carried values", "moved on since taken"),
+        (total("stale"), "carried value", "carried values", MOVED),
         (total("memory"), "value", "values", f"of the code set {FROM_MEMORY}"),
     ]  # fmt: skip
-    wrong = ("not confirmed", "NOT", "not decided", "with a problem", "moved on")
-    counts: list[tuple[str, list[Node]]] = [
-        (str(count), [strong(text) if count and state.startswith(wrong) else text])
-        for count, one, many, state in told
-        for text in [f"{one if count == 1 else many} {state}"]
-    ]
-    if total("unconfirmed"):
-        counts[0][1].extend([", ", *page("unconfirmed")])
+    wrong = ("not confirmed", "NOT", "not decided", "with a problem", MOVED)
+    listed = {
+        "not confirmed for this job": "unconfirmed",
+        f"of the code set {FROM_MEMORY}": "memory",
+    }
+    counts: list[tuple[str, list[Node]]] = []
+    for count, one, many, state in told:
+        text = f"{one if count == 1 else many} {state}"
+        said: list[Node] = [strong(text) if count and state.startswith(wrong) else text]
+        where = page(listed.get(state) if count else None)
+        if count or state != MOVED:
+            counts.append((str(count), joined([said, where], ", ")))
     return counts
 
 
 def summary(statements: list[Statement], anchors: Anchors) -> dict[str, Any]:
-    """Return the results, verdicts, problems and unconfirmed entries of all workbooks."""
+    """Return the results, verdicts, problems, and what is to be confirmed, of all workbooks."""
     results = []
     for index, statement in enumerate(statements):
         rows = [_result(index, result, anchors) for result in statement.get("results", ())]
@@ -138,28 +145,51 @@ def summary(statements: list[Statement], anchors: Anchors) -> dict[str, Any]:
         ),
         "problems": _listed(statements, anchors, lambda item: phrase(_problem(item))),
         "unconfirmed": _listed(statements, anchors, _unconfirmed),
+        "memory": _listed(statements, anchors, _clause, from_memory),
     }
 
 
+def from_memory(item: Item) -> Iterator[Item]:
+    """Yield an item, and the columns of a schedule, that came into the code set from memory."""
+    for part in (item, *item.get("columns", ())):
+        if part.get("memory") and part.get("applies", True):
+            yield part
+
+
+def _clause(item: Item) -> list[Node]:
+    return [words(item.get("clause") or item.get("source") or "no clause named")]
+
+
 def _listed(
-    statements: list[Statement], anchors: Anchors, told: Callable[[Item], list[Node]]
+    statements: list[Statement],
+    anchors: Anchors,
+    told: Callable[[Item], list[Node]],
+    parts: Callable[[Item], Iterable[Item]] = lambda item: (item,),
 ) -> list[dict[str, Any]]:
     """Return, by workbook, the items something is told of: number, meaning, what, page."""
     groups = []
     for index, statement in enumerate(statements):
         rows: list[Row] = [
             [
-                link(anchors.item(index, item["number"]), item["number"]),
-                phrase(item.get("meaning") or ""),
+                link(anchors.item(index, number), number),
+                phrase(part.get("meaning") or part.get("text") or ""),
                 said,
-                page_of(anchors, index, item["number"]),
+                page_of(anchors, index, number),
             ]
             for item in items(statement)
-            if (said := told(item))
+            for part in parts(item)
+            if (said := told(part))
+            for number in [_printed_at(anchors, index, part, item)]
         ]
         if rows:
             groups.append({"title": _book_title(index, statement), "rows": rows})
     return groups
+
+
+def _printed_at(anchors: Anchors, index: int, part: Item, item: Item) -> str:
+    """Return the number a part of an item is printed under: its own, else that of the item."""
+    own = part.get("number")
+    return str(own if anchors.item(index, own) else item["number"])
 
 
 def _book_title(index: int, statement: Statement) -> list[Node]:
@@ -172,7 +202,7 @@ def _result(index: int, result: dict[str, Any], anchors: Anchors) -> Row:
         link(anchors.item(index, number), number),
         phrase(result.get("meaning", "")),
         [symbol(result["name"])],
-        [strong(nodes.value(result["value"]))],
+        [strong(amount(result["value"]))],
         [words(result.get("sign") or "")],
         page_of(anchors, index, number),
     ]
@@ -194,24 +224,18 @@ def _problem(item: Item) -> str:
 def _unconfirmed(item: Item) -> list[Node]:
     """Return the value and source of an entry nobody confirmed, or nothing."""
     kind = item["kind"]
-    if kind == "schedule":
-        rows = [] if item.get("fixed") else item.get("confirmed") or []
-        keys = [key for key, by in zip(item["rows"], rows, strict=False) if not by]
-        return [f"rows: {named(keys, len(item['rows']))}"] if keys else []
-    if item.get("confirmed") or kind not in ("entry", "text", "choice", "carried"):
-        return []
-    if kind == "carried" and not item.get("fallback"):
+    if keys := unconfirmed_rows(item):
+        return [f"rows: {named(keys, len(item['rows']))}"]
+    if not is_unconfirmed(item):
         return []
     if kind == "carried":
         return [*carried_words(item), "; fallback value"]
-    if kind == "text" and not item.get("text"):
-        return [strong("nothing entered")]
     if kind == "text":
         shown = item["text"]
     elif kind == "choice":
         shown = option_words(item)
     else:
-        shown = nodes.value(item.get("value"))
+        shown = amount(item.get("value"))
     source = f"; {words(item['source'])}" if item.get("source") else ""
     return [typed(words(shown)), source]
 

@@ -9,7 +9,9 @@ from calcbook import formula, typeset, units
 from calcbook.errors import PackError
 from calcbook.pack import nodes, schedules
 from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
-from calcbook.wording import option_words
+from calcbook.standing import is_unconfirmed
+from calcbook.wording import FROM_MEMORY, OUTSIDE, amount, compared, governs, option_words
+from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -17,11 +19,9 @@ if TYPE_CHECKING:
     from calcbook.pack.anchors import Anchors, Item, Statement
     from calcbook.pack.repeats import Repeats
 
-FROM_MEMORY = "from memory: confirm against the code"
 LONG_TEXT = 500
 SURELY_FITS = 50  # characters of a formula that fit on a line whatever they are
 READ = " is read between the points by straight lines; "
-OUTSIDE = {"hold": "outside them the value at the edge holds", "refuse": "not valid outside them"}
 
 
 @dataclass(frozen=True)
@@ -99,9 +99,9 @@ class Writer:
         return notes
 
     def _entry(self, item: Item) -> dict[str, Any]:
-        value = _equals(item.get("name"), typed(words(nodes.value(item["value"]))))
+        value = _equals(item.get("name"), typed(words(amount(item["value"]))))
         if item.get("shown"):
-            value += [" = ", nodes.value(item["shown"])]
+            value += [" = ", amount(item["shown"])]
         return {"t": "entry", "value": value, "notes": confirmation(item)}
 
     def _text(self, item: Item) -> dict[str, Any]:
@@ -180,6 +180,7 @@ class Writer:
             "lines": [[symbol(item["name"]), READ, OUTSIDE[item["outside"]]]],
             "table": schedules.lookup_table(item),
             "after": [],
+            "legend": [],
             "notes": [[words(item["source"])]] if told else [],
         }
 
@@ -197,9 +198,10 @@ class Writer:
             return {"t": "entry", "value": [told], "lines": lines, "notes": notes}
         return {
             "t": "schedule",
-            "lines": [*lines, *self.repeats.new(self.index, schedules.legend(item))],
+            "lines": lines,
             "table": schedules.table(item),
             "after": schedules.remarks(item),
+            "legend": self.repeats.new(self.index, schedules.legend(item)),
             "notes": notes,
         }
 
@@ -211,13 +213,23 @@ class Writer:
         return bool(printed and plain and not trouble and not item["problem"])
 
 
-def governing(item: Item) -> list[Item]:
-    """Return the lines of a schedule's governing row as items to be printed under it."""
-    row = item.get("governing")
-    if not row:
+def governing(item: Item) -> list[tuple[list[Node], list[Item]]]:
+    """Return a schedule's governing rows: what each governs, and its lines to be printed."""
+    worked = item.get("governing")
+    if not worked:
         return []
     used = {column["name"]: column.get("used_by", ()) for column in item["columns"]}
-    return [{**line, "used_by": used.get(line["name"], ())} for line in row["lines"]]
+    rows: dict[str, list[Item]] = {}
+    for line in worked["lines"]:
+        told = {**line, "used_by": used.get(line["name"], ())}
+        rows.setdefault(line.get("row", worked["row"]), []).append(told)
+    return [(_row_heading(item, row), lines) for row, lines in rows.items()]
+
+
+def _row_heading(item: Item, row: str) -> list[Node]:
+    """Return 'Row WX1+, largest M_b, smallest N_b'."""
+    for_what = [[f"{which} ", symbol(column)] for which, column in governs(item, row)]
+    return joined([[strong(f"Row {words(row)}")], *for_what], ", ")
 
 
 def equation(item: Item) -> dict[str, Any]:
@@ -253,27 +265,19 @@ def equation(item: Item) -> dict[str, Any]:
 
 def verdict(item: Item) -> list[Node]:
     """Return 'demand 1.908, limit 2.400 kPa, ratio 0.80: satisfied'."""
-    demand, limit = item.get("demand") or {}, item.get("limit") or {}
-    if not demand.get("text") and not limit.get("text"):
-        return [strong(judged(item))]
-    shown = nodes.value(demand)
-    if demand.get("text") and limit.get("text") and demand.get("unit") == limit.get("unit"):
-        shown = nodes.value({**demand, "unit": ""})
-    ratio = f", ratio {item['ratio_text']}" if item.get("ratio_text") else ""
-    return [f"demand {shown}, limit {nodes.value(limit)}{ratio}: ", strong(judged(item))]
-
-
-def judged(item: Item) -> str:
-    """Return a check's verdict in words."""
-    return {True: "satisfied", False: "NOT SATISFIED", None: "not decided"}[item["satisfied"]]
+    sides = compared(item)
+    return [f"{sides}: ", strong(judged(item))] if sides else [strong(judged(item))]
 
 
 def confirmation(item: Item) -> list[list[Node]]:
-    """Return whether the value is confirmed, by whom, and where it comes from."""
+    """Return whether the value is confirmed, by whom, and where it comes from.
+
+    Nothing is said of words left empty: there is nothing in them to confirm.
+    """
     source = f": {words(item['source'])}" if item.get("source") else ""
     if item.get("confirmed"):
         return [[f"confirmed {words(item['confirmed'])}{source}"]]
-    return [[strong("not confirmed"), source]]
+    return [[strong("not confirmed"), source]] if is_unconfirmed(item) else []
 
 
 def carried_words(item: Item) -> list[Node]:
@@ -282,7 +286,7 @@ def carried_words(item: Item) -> list[Node]:
         return [words(option_words(item))]
     if item.get("text") is not None:
         return [words(item["text"] or "nothing carried")]
-    return _equals(item.get("name"), nodes.value(item.get("value")))
+    return _equals(item.get("name"), amount(item.get("value")))
 
 
 def moved(item: Item) -> str:
@@ -290,7 +294,7 @@ def moved(item: Item) -> str:
     was, now = item.get("taken") or {}, item.get("value") or {}
     if not was.get("text") or not now.get("text"):
         return "it has moved on since it was taken"
-    return f"was {nodes.value(was)} when taken, is now {nodes.value(now)}"
+    return f"was {amount(was)} when taken, is now {amount(now)}"
 
 
 def origin_words(anchors: Anchors, item: Item) -> list[Node]:

@@ -9,6 +9,7 @@ import re
 from typing import TYPE_CHECKING, Any
 
 from calcbook import typeset
+from calcbook.wording import symbols_in
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -17,7 +18,6 @@ Node = str | dict[str, Any]
 LONG_RUN = re.compile(r"[^\s\u200b]{25,}")
 LONGEST_RUN = 24
 BREAK_HERE = "\u200b"
-SYMBOL_IN_WORDS = re.compile(r"(?<![\w./\\-])([A-Za-z]{1,3}_[A-Za-z0-9]{1,4})(?![\w/\\-]|\.\w)")
 RUN_OF_NUMBERS = 3
 
 
@@ -33,8 +33,7 @@ def _breakable(found: re.Match[str]) -> str:
 
 def phrase(text: str) -> list[Node]:
     """Return words of a workbook, with a symbol such as q_z among them set as a symbol."""
-    pieces = SYMBOL_IN_WORDS.split(str(text))
-    return [symbol(p) if at % 2 else words(p) for at, p in enumerate(pieces) if p]
+    return [symbol(p) if is_symbol else words(p) for p, is_symbol in symbols_in(str(text))]
 
 
 def numbers(given: Sequence[str]) -> str:
@@ -84,13 +83,6 @@ def page(target: str | None) -> list[Node]:
 def symbol(name: str) -> Node:
     """Return a symbol of the formulas."""
     return math(typeset.symbol(name, "typst"), typeset.symbol(name, "plain"))
-
-
-def value(value: dict[str, Any] | None) -> str:
-    """Return a value of a statement with its unit, or words where there is none."""
-    if not value or not value.get("text"):
-        return "not available"
-    return typeset.number(value["text"], value.get("unit", ""), "plain")
 
 
 def joined(parts: Sequence[Sequence[Node]], separator: str) -> list[Node]:

@@ -2,53 +2,72 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CarryError
 from calcbook.figures import draw
 from calcbook.fingerprint import item_digest
-from calcbook.job import Job
+from calcbook.job import BASIS, Job
 from calcbook.pack.compile import make_pack
 from calcbook.pack.cover import Cover
 from calcbook.record import CarriedRecord, update
-from calcbook.run import BASIS, Filling, Runner, all_items, carries
+from calcbook.run import Filling, Runner, all_items, carries
+from calcbook.wording import counted
 
 if TYPE_CHECKING:
-    from collections.abc import Callable, Mapping
+    from collections.abc import Callable, Iterator, Mapping
     from pathlib import Path
 
     from calcbook.record import Record
     from calcbook.workbook import Workbook
 
 Statement = dict[str, Any]
+Taken = dict[str, CarriedRecord]
+Holder = tuple[str, str | None]
+
+
+@dataclass(frozen=True)
+class Packed:
+    """A calculation package: the PDF, its statements, and which carried values moved on.
+
+    ``moved`` says one of them in a text: 'wind-pressure h: 15.6 m -> 16.0 m'.
+    """
+
+    pdf: bytes
+    statements: tuple[Statement, ...]
+    moved: tuple[str, ...]
 
 
 def pack_job(
-    job: Job, progress: Callable[[str], None] | None = None
-) -> tuple[bytes, list[Statement]]:
-    """Return the calculation package of a job and the statements it was made from.
+    job: Job,
+    progress: Callable[[str], None] | None = None,
+    save: Callable[[bytes], None] | None = None,
+) -> Packed:
+    """Return the calculation package of a job.
 
-    Every workbook is run from its first cell, in the order of the carries, and what it carries is
-    taken as it is now and noted in its record.
+    Every workbook is run from its first cell, in the order of the carries, with what it carries
+    as it is now. Only when the pages are made, and ``save`` has kept them, is that noted in the
+    records as taken: a package that cannot be made leaves the job as it was.
 
     Raises
     ------
     CalcbookError
-        A workbook stops, the carries go in a circle, or the pages cannot be printed.
+        A workbook stops, the carries go in a circle, the pages cannot be printed, or ``save``
+        raises it.
     """
-    runner = Runner(job, progress)
-    wanted = [(w, mark) for w in job.workbooks for mark in (job.marks(w) or (None,))]
-    for workbook, mark in wanted:
-        runner.statement(workbook, mark)
-    _take(runner)
-    fresh = Runner(job)
-    fresh.books = {
-        key: found for key, found in runner.books.items() if not found[1]["counts"]["stale"]
+    runner = Runner(job, progress, forget_taken=True)
+    statements = [runner.statement(workbook, mark) for workbook, mark in job.fillings()]
+    now = {
+        (workbook, mark): _carried_now(runner, book)
+        for (workbook, mark), (book, _) in list(runner.books.items())
     }
-    statements = [fresh.statement(workbook, mark) for workbook, mark in wanted]
     if progress is not None:
         progress("pages")
-    return make_pack(cover_of(fresh, job), statements, draw), statements
+    pdf = make_pack(cover_of(runner, job), statements, draw)
+    if save is not None:
+        save(pdf)
+    return Packed(pdf, tuple(statements), tuple(_note_taken(job, runner, now)))
 
 
 def pack_notebook(path: Path) -> bytes:
@@ -84,25 +103,44 @@ def cover_of(runner: Runner, job: Job | None) -> Cover:
     )
 
 
-def _take(runner: Runner) -> None:
-    """Note in each record what the workbook carries now, where that is not noted already."""
-    for (workbook, mark), (book, _) in list(runner.books.items()):
-        now = _carried_now(runner, book)
-        if runner.job is None or not now:
+def _note_taken(job: Job, runner: Runner, now: Mapping[Holder, Taken]) -> Iterator[str]:
+    """Note in each record what its workbook carries now; yields what had moved on."""
+    for (workbook, mark), taken in now.items():
+        record = job.record(workbook, mark)
+        former = record.carried
+        if {o: c.fingerprint for o, c in former.items()} == {
+            o: c.fingerprint for o, c in taken.items()
+        }:
             continue
-        record = runner.job.record(workbook, mark)
-        known = {o: c.fingerprint for o, c in record.carried.items()}
-        if known == {o: c.fingerprint for o, c in now.items()}:
-            continue
+        here = {origin: name for name, origin in carries(runner.books[workbook, mark][0]).items()}
+        holder = f"{workbook}:{mark}" if mark else workbook
+        moved = [
+            f"{holder} {here[origin]}: {_change(former[origin].value, found.value)}"
+            for origin, found in taken.items()
+            if origin in former and former[origin].fingerprint != found.fingerprint
+        ]
 
-        def note(found: Record, now: dict[str, CarriedRecord] = now) -> None:
-            gone = dict.fromkeys(set(found.carried) - set(now))
-            found.change(carried=gone | now)
+        def note(found: Record, taken: Taken = taken) -> None:
+            gone = dict.fromkeys(set(found.carried) - set(taken))
+            found.change(carried=gone | taken)
 
         update(record.path, workbook, mark, note)
+        yield from moved
 
 
-def _carried_now(runner: Runner, book: Workbook) -> dict[str, CarriedRecord]:
+def _change(was: str, now: str) -> str:
+    if was != now:
+        return f"{was} -> {now}"
+    # a schedule is noted by the number of its rows
+    return (
+        f"{now}, changed"
+        if now.endswith(("row", "rows"))
+        else (f"{now}, moved by less than is shown")
+    )
+
+
+def _carried_now(runner: Runner, book: Workbook) -> Taken:
+    """Return what a workbook carries as it is now; CarryError when its source has no such item."""
     now = {}
     for origin in dict.fromkeys(carries(book).values()):
         workbook, _, name = origin.partition(".")
@@ -118,7 +156,7 @@ def _carried_now(runner: Runner, book: Workbook) -> dict[str, CarriedRecord]:
 def _taken(origin: str, item: Mapping[str, Any]) -> CarriedRecord:
     value = item.get("value") or {}
     text = f"{value.get('text', '')} {value.get('unit', '')}".strip()
-    rows = f"{len(item['rows'])} rows" if "rows" in item else ""
+    rows = counted(len(item["rows"]), "row") if "rows" in item else ""
     return CarriedRecord(
         value=text or str(item.get("option") or item.get("text") or rows),
         si=value.get("si"), option=str(item.get("option") or ""), origin=origin,

@@ -7,7 +7,8 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook import formula, typeset, units
 from calcbook.pack import nodes
-from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, value, words
+from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, words
+from calcbook.wording import amount, cases_told
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -54,22 +55,30 @@ def lookup_table(item: Item) -> dict[str, Any]:
 
 
 def legend(item: Item) -> list[list[Node]]:
-    """Return what each column is; computed ones with formula unless a row is worked in full."""
-    worked = {line.get("name") for line in (item.get("governing") or {}).get("lines", ())}
-    told: list[list[Node]] = []
+    """Return what each column is, in their order; a formula stands on a line of its own.
+
+    A column worked in full under the schedule has its formula there.
+    """
+    worked = {
+        (line.get("name"), line.get("formula"))
+        for line in (item.get("governing") or {}).get("lines", ())
+    }
     lines: list[list[Node]] = []
+    told: list[list[Node]] = []
     for column in item["columns"]:
         clause = f" ({words(column['clause'])})" if column.get("clause") else ""
         meaning = phrase(column.get("meaning", ""))
+        formulas = {case["formula"] for case in column.get("cases") or ()} or {column["formula"]}
         if not column.get("applies", True):
-            lines.append([symbol(column["name"]), " ", *meaning, ": not applied"])
-        elif column["role"] == "computed" and column["name"] not in worked:
-            lines += _definitions(column, [*meaning, clause])
+            told.append([symbol(column["name"]), " ", *meaning, ": not applied"])
+        elif column["role"] == "computed" and {(column["name"], f) for f in formulas} - worked:
+            lines += [joined(told, "; "), *_definitions(column, [*meaning, clause])]
+            told = []
         elif column["role"] not in WORDY and "labels" not in column:  # words are headed by words
             role = {"entered": ", entered", "carried": ", brought forward"}.get(column["role"], "")
             role = "" if item.get("fixed") else role
             told.append([symbol(column["name"]), " ", *meaning, f"{role}{clause}"])
-    return [line for line in (joined(told, "; "), *lines) if line]
+    return [line for line in (*lines, joined(told, "; ")) if line]
 
 
 def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:
@@ -78,14 +87,21 @@ def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:
         return [[_definition(column["name"], column["formula"]), ", ", *meaning]]
     holding = [case for case in column["cases"] if case.get("holds")] or column["cases"]
     lines: list[list[Node]] = [[symbol(column["name"]), " ", *meaning, ", by case:"]]
-    for case in holding:
-        line: list[Node] = [_definition(column["name"], case["formula"])]
-        condition = formula.parse(case["when"])
-        code, plain = (typeset.expression(condition, output) for output in ("typst", "plain"))
-        if len(plain) <= LONGEST_CONDITION or not column.get("clause"):
-            line += [" where ", nodes.math(code, plain)]
-        lines.append(line)
+    for text, conditions in cases_told({**column, "cases": holding}):
+        when = [[_condition(test)] if test else ["otherwise"] for test in conditions]
+        plain = " or ".join(
+            typeset.expression(formula.parse(test), "plain") for test in conditions if test
+        )
+        if len(plain) > LONGEST_CONDITION and column.get("clause"):
+            when = []  # the clause says it
+        where = " where " if when and any(conditions) else " "
+        lines.append([_definition(column["name"], text), where, *joined(when, " or ")])
     return lines
+
+
+def _condition(text: str) -> Node:
+    tree = formula.parse(text)
+    return nodes.math(typeset.expression(tree, "typst"), typeset.expression(tree, "plain"))
 
 
 def _definition(name: str, text: str) -> Node:
@@ -99,7 +115,7 @@ def remarks(item: Item) -> list[list[Node]]:
     said: list[list[Node]] = []
     governs = [
         [strong(words(part["row"])), f", {part['which']} ", symbol(part["column"]),
-         f" = {value(part['value'])}"]
+         f" = {amount(part['value'])}"]
         for part in item.get("envelope", ())
     ]  # fmt: skip
     if governs:
@@ -166,8 +182,8 @@ def _column(item: Item, column: Column) -> Column:
         _cell(text or ("" if p is None else "n/a"), unit, wordy=wordy)
         for text, p in _pairs(column, problems)
     ]
-    for cell in cells:
-        cell["typed"] = entered
+    for cell, text, typed in zip(cells, column["texts"], column.get("typed") or (), strict=False):
+        cell["typed"] = entered and _as_typed(text, typed, unit)
     total = column.get("total")
     number = not wordy and all(c["digits"] is not None or c["void"] for c in cells)
     if number:
@@ -176,6 +192,11 @@ def _column(item: Item, column: Column) -> Column:
         head = [phrase(column.get("meaning") or column["name"])]
     sum_cell = _cell(total.get("text") or "n/a", unit) if total else None
     return _laid_out(head, cells, sum_cell, number=number)
+
+
+def _as_typed(text: str, typed: str, unit: str) -> bool:
+    """Whether a cell shows what was typed, and not the same quantity in another unit."""
+    return text == typed.strip().removesuffix(unit).strip()
 
 
 def _pairs(column: Column, problems: Sequence[str | None]) -> list[tuple[str | None, str | None]]:

@@ -57,9 +57,9 @@ def pack(folder: Path, watch: Watch) -> dict[str, float]:
     """Pack a job and return the seconds in all and of each part."""
     watch.seconds = {}
     start = time.perf_counter()
-    pdf, _ = package.pack_job(Job.load(folder))
+    packed = package.pack_job(Job.load(folder))
     seconds = time.perf_counter() - start
-    assert pdf.startswith(b"%PDF")
+    assert packed.pdf.startswith(b"%PDF")
     return {"all": seconds, **watch.seconds}
 
 

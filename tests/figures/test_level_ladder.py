@@ -1,5 +1,7 @@
 """The building in elevation."""
 
+# ruff: noqa: RUF001  figures print true minus signs
+
 from __future__ import annotations
 
 from copy import deepcopy
@@ -89,7 +91,7 @@ def test_elevations_above_a_datum_have_no_ground() -> None:
 def test_basement_only() -> None:
     """Levels below the ground alone are drawn with their signs."""
     printed = words(figures.draw(levels(["B2", "B1"], ["-6.5", "-3.0"]), LADDER))
-    assert {"-6.5 m", "-3.0 m", "3.5"} <= set(printed)
+    assert {"−6.5 m", "−3.0 m", "3.5"} <= set(printed)
 
 
 def test_many_levels_are_thinned_in_words() -> None:

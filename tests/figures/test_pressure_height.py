@@ -1,5 +1,7 @@
 """Pressure over height."""
 
+# ruff: noqa: RUF001  figures print true minus signs
+
 from __future__ import annotations
 
 from copy import deepcopy
@@ -28,7 +30,7 @@ def test_alt_text_has_the_largest_and_where() -> None:
 def test_largest_is_by_magnitude() -> None:
     """With every pressure a suction the largest is the one furthest from zero."""
     said = figures.describe(statement(*flipped(wind())), HEIGHT)
-    assert "Largest windward pressure: -1.908 kPa at Roof" in said
+    assert "Largest windward pressure: −1.908 kPa at Roof" in said
 
 
 def test_missing_pressure_is_said_at_its_level() -> None:

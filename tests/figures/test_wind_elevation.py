@@ -1,5 +1,7 @@
 """The section along the wind with its pressures."""
 
+# ruff: noqa: RUF001  figures print true minus signs
+
 from __future__ import annotations
 
 import math
@@ -46,10 +48,10 @@ def test_values_are_the_statements_texts() -> None:
     printed = words(drawn(wind(), FLAT))
     for text in ("1.476", "1.649", "1.796", "1.908", "15.6", "8.1"):
         assert text in printed
-    for label in ("-1.190 kPa", "-1.670 kPa", "0.505 kPa", "-0.505 kPa", "-1.193 kPa"):
+    for label in ("−1.190 kPa", "−1.670 kPa", "0.505 kPa", "−0.505 kPa", "−1.193 kPa"):
         assert label in printed
-    assert printed.count("-2.147 kPa") == 2
-    assert printed.count("-0.429 kPa") == 3
+    assert printed.count("−2.147 kPa") == 2
+    assert printed.count("−0.429 kPa") == 3
     assert "depth 24.5 m" in printed
 
 
@@ -114,6 +116,34 @@ def test_zero_has_a_value_and_no_arrow() -> None:
     assert not [name for name in shafts(svg) if name.startswith("leeward")]
 
 
+def test_what_prints_as_zero_has_no_arrow() -> None:
+    """A pressure too small to be printed points nowhere, and a dot for it is not explained."""
+    small = value("0.000", "kPa", -0.04)
+    items = changed(changed(wind(), "p_l", value=small), "p_s", value=small)
+    svg = drawn(items, FLAT)
+    assert words(svg).count("0.000 kPa") == 2
+    assert not [name for name in named(svg) if name.startswith(("leeward", "side"))]
+    assert "A dot is" not in sentences(items, FLAT)
+
+
+def test_open_arrows_are_explained() -> None:
+    """The note says what open arrows stand for, and nothing of them where there is none."""
+    assert "Open arrows are the roof's alternative 2 and the further internal" in sentences(
+        wind(), FLAT
+    )
+    bare = {role: name for role, name in WALLS.items() if not role.startswith("p_internal")}
+    assert "Open arrows" not in sentences(wind(), figure("wind-elevation", **bare))
+
+
+@pytest.mark.parametrize("turned", [False, True])
+def test_leaders_end_at_the_highest_arrow_of_their_zone(turned: bool) -> None:
+    """The line from a zone's values ends where its highest arrow does."""
+    svg = drawn(flipped(gable()) if turned else gable())
+    found = [one for name, one in shafts(svg).items() if name.startswith("roof-1-")]
+    end = min((point for one in found for point in (one.tail, one.head)), key=lambda p: p[1])
+    assert outline(svg, "leader-windward slope")[-1] == pytest.approx(end, abs=1e-3)
+
+
 def test_roof_is_drawn_from_pitch_depth_and_eave() -> None:
     """A flat roof is level; a gable's slopes have the pitch, and its ridge is over the middle."""
     (_, eave), (_, middle), (_, far) = outline(drawn(wind(), FLAT), "roof")
@@ -170,10 +200,10 @@ def test_section_that_does_not_apply_takes_its_values_along() -> None:
     [
         ("theta", value("", "deg", None), "Roof not drawn: the pitch is not known"),
         ("theta", value("88", "deg", math.radians(88.0)), "a pitch of 88° is no roof to draw"),
-        ("theta", value("-5", "deg", math.radians(-5.0)), "a pitch of -5° is no roof to draw"),
-        ("L", value("-24.5", "m", -24.5), "-24.5 m is not a length to draw"),
+        ("theta", value("-5", "deg", math.radians(-5.0)), "a pitch of −5° is no roof to draw"),
+        ("L", value("-24.5", "m", -24.5), "−24.5 m is not a length to draw"),
         ("L", value("0", "m", 0.0), "Roof not drawn: the depth along the wind is not known."),
-        ("h_e", value("-15.6", "m", -15.6), "-15.6 m is not a length to draw"),
+        ("h_e", value("-15.6", "m", -15.6), "−15.6 m is not a length to draw"),
     ],
 )
 def test_shape_that_cannot_be_drawn_is_said(name: str, spoilt: dict[str, Any], reason: str) -> None:
@@ -195,9 +225,11 @@ def test_zones_follow_each_other_from_the_windward_edge() -> None:
     assert "over 2h" not in words(svg)
     found = shafts(svg)
     left, right = (outline(svg, "roof")[end][0] for end in (0, -1))
-    for strip, share in (("1", 7.8 / 24.5 / 4.0), ("2", (7.8 + 7.8 / 4.0) / 24.5)):
-        place = found[f"roof-{strip}-1-1-away"].tail[0]
-        assert (place - left) / (right - left) == pytest.approx(share, abs=1e-4)
+    for strip, middle in (("1", 3.9 / 24.5), ("2", 11.7 / 24.5)):
+        one, other = (found[f"roof-{strip}-{number}-away"].tail[0] for number in (1, 2))
+        assert one < other
+        place = (one + other) / 2.0
+        assert (place - left) / (right - left) == pytest.approx(middle, abs=1e-4)
 
 
 @pytest.mark.parametrize("texts", [["7.8", "7.8", "8.9", "9.0"], ["7.8", "", "8.9", "7.8"]])
@@ -207,7 +239,7 @@ def test_zones_that_do_not_fill_the_roof_are_not_passed_off_as_to_scale(texts: l
     items[-1]["columns"][0] = column("w", "m", texts)
     said = sentences(items, FLAT)
     assert "Lengths of the roof zones are not to scale." in said
-    assert "-0.716 kPa" in said
+    assert "−0.716 kPa" in said
 
 
 def test_zones_may_be_given_by_start_and_end() -> None:
@@ -234,7 +266,7 @@ def test_zones_may_be_given_by_name() -> None:
     zones = {"edge": ["p_rw", "p_rw2"], "field": "p_rl"}
     item = figure("wind-elevation", **WALLS, roof_zones=zones)
     printed = words(drawn(wind(), item))
-    assert {"edge", "field", "-0.846 kPa", "0.431 kPa", "-1.343 kPa"} <= set(printed)
+    assert {"edge", "field", "−0.846 kPa", "0.431 kPa", "−1.343 kPa"} <= set(printed)
     assert "Lengths of the roof zones are not to scale." in printed
 
 
@@ -333,7 +365,7 @@ def test_us_units_are_shown_as_given() -> None:
     ]
     item = figure("wind-elevation", levels="levels", z="z", p_windward="p", p_leeward="p_l")
     svg = drawn(items, item)
-    assert {"z, ft", "psf", "25.52", "-15.95 psf"} <= set(words(svg))
+    assert {"z, ft", "psf", "25.52", "−15.95 psf"} <= set(words(svg))
     found = shafts(svg)
     ratio = found["leeward-1-1-away"].along[0] / found["windward-1-toward"].along[0]
     assert ratio == pytest.approx(15.95 / 25.52, rel=1e-5)
@@ -350,7 +382,7 @@ def test_alt_text_names_the_largest_and_where() -> None:
     """The figure in words has the largest pressure drawn, its sense and its place."""
     source = statement(*wind())
     assert (
-        "The largest pressure drawn is -2.147 kPa away from the surface: "
+        "The largest pressure drawn is −2.147 kPa away from the surface: "
         "roof 0 to h/2, alternative 1." in figures.describe(source, FLAT)
     )
     assert (
@@ -364,7 +396,7 @@ def test_alt_text_tells_what_is_left_out() -> None:
     source = statement(*changed(gable(), "p_l", problem="not available because V is missing"))
     said = figures.describe(source, GABLE)
     assert "Leeward wall not drawn: not available because V is missing." in said
-    assert "-1.190" not in said
+    assert "−1.190" not in said
 
 
 def test_nothing_known_is_no_error() -> None:

@@ -120,9 +120,43 @@ def test_typing_confirms_for_this_job(wind: Session) -> None:
     assert (entry.confirmed.job, entry.confirmed.by, entry.confirmed.value) == (
         "MC-0417", "RA", "72 m/s",
     )  # fmt: skip
-    assert entry.source == "map"
     assert marks(wind, "Site")[0].value
     assert marks(wind, "Site")[0].description == "confirmed RA"
+
+
+def test_another_value_does_not_keep_the_source(wind: Session) -> None:
+    """The source belonged to the value it was given for; the same value typed again keeps it."""
+    field(wind, "Site", SPEED).value = "70.0"
+    assert wind.job.record("wind").entries["V"].source == ""
+    assert "source not given" in text(wind, "Site")
+    again = opened(WIND, make_job(wind.job.folder.parent / "again"))
+    marks(again, "Site")[0].value = True
+    assert again.job.record("wind").entries["V"].source == "map"
+    again.enter("V", "70 m/s")
+    assert again.job.record("wind").entries["V"].source == "map"
+
+
+def test_no_mark_stands_beside_a_refused_text(wind: Session) -> None:
+    """What is seen in the field is not what was confirmed; the mark comes back with a value."""
+    speed = field(wind, "Site", SPEED)
+    speed.value = "72"
+    count = len(marks(wind, "Site"))
+    speed.value = "7 m/s"
+    assert len(marks(wind, "Site")) == count - 1
+    field(wind, "Site", "Exposure").value = "B"
+    assert len(marks(wind, "Site")) == count - 1
+    speed.value = "73"
+    assert len(marks(wind, "Site")) == count
+
+
+def test_a_refused_value_of_the_record_is_not_called_confirmed(wind: Session) -> None:
+    """A confirmed value that is out of range is a problem, and nothing says it is confirmed."""
+    field(wind, "Site", SPEED).value = "72"
+    path = wind.job.record_path("wind")
+    path.write_text(path.read_text(encoding="utf-8").replace("72 m/s", "7 m/s"), encoding="utf-8")
+    told = text(opened(WIND, wind.job), "Site")
+    assert "outside the range" in told
+    assert "confirmed RA" not in told
 
 
 def test_ticking_confirms_the_value_that_stands(wind: Session) -> None:

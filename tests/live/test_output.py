@@ -52,12 +52,61 @@ def test_a_schedule_is_a_markdown_table(wind: Session) -> None:
     assert "| **Total** |  |  | **64." in told
 
 
+@pytest.fixture(scope="module")
+def by_case() -> str:
+    """Return a section as plain text: a check from below, a column by case, governing rows."""
+    book = open_live("cases", "Cases")
+    with book.section("Rows") as s:
+        s.entry("a", "Length where C_p holds", "3 m", unit="length")
+        s.check("a >= '0 m'", "Not below the ground")
+        s.remark("Only for short ones.", "reason", when="a < '1 m'")
+        keys = [{"key": key, "n": n} for key, n in (("P", "1"), ("Q", "2"), ("R", "3"))]
+        with s.schedule("cells", "Cells", heading="Cell", rows=keys) as t:
+            t.entry("n", "Count")
+            t.line(
+                "w",
+                "Width",
+                unit="length",
+                cases=[("n == 1", "a"), ("n == 2", "a"), ("n == 3", "2*a")],
+            )
+            t.line("u", "Rest", cases=[("n == 1", "n/2"), ("n == 2", "n/2"), ("n == 3", "n/3")])
+            t.governing("w", "largest")
+            t.governing("w", "smallest")
+    statement = book.statement()
+    return output.plain(statement, sections(statement)[0])
+
+
+def test_a_limit_from_below_is_told_as_one(by_case: str) -> None:
+    """What must be at least something is a value, not a demand; the ratio is unchanged."""
+    assert "value 3.000 m, at least 0.000 m: satisfied" in by_case
+
+
+def test_a_remark_that_does_not_apply_says_so(by_case: str) -> None:
+    """Its number does not stand alone: the reason stands beside it."""
+    assert re.search(r"^1\.3 not applied: .+", by_case, re.MULTILINE)
+
+
+def test_columns_by_case_show_their_formulas(by_case: str) -> None:
+    """Each formula is told with its conditions, those that follow each other joined by 'or'."""
+    assert "u: Rest, by case:" in by_case
+    assert "u = n / 2 where n = 1 or n = 2" in by_case
+    assert "u = n / 3 where n = 3" in by_case
+    assert "w: Width\n" in by_case
+
+
+def test_each_governing_row_is_headed(by_case: str) -> None:
+    """The lines worked in a row stand under its key and what it governs."""
+    largest = by_case.index("Row R, largest w\n")
+    smallest = by_case.index("Row P, smallest w\n")
+    assert "w = 2 a" in by_case[largest:smallest]
+
+
 def test_words_cannot_break_the_markdown(wind: Session) -> None:
     """Signs that mean something in Markdown are escaped, line ends are spaces."""
     section = json.loads(json.dumps(wind.section("Open country")))
-    section["items"][0]["text"] = "a*b_c | <i> $5\nnext"
+    section["items"][0]["text"] = "a*b_and_c | <i> $5\nnext"
     told = output.markdown(wind.statement, section)
-    assert r"a\*b\_c \| \<i\> \$5 next" in told
+    assert r"a\*b\_and\_c \| \<i\> \$5 next" in told
 
 
 def test_plain_text_of_a_section(wind: Session) -> None:

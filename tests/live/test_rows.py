@@ -8,6 +8,9 @@ import pytest
 from live_samples import WIND, opened
 from widgets_in import button, field, marks, text
 
+from calcbook.errors import InputError
+from calcbook.record import RowRecord
+
 if TYPE_CHECKING:
     from calcbook.live import Session
 
@@ -90,6 +93,45 @@ def test_a_row_is_confirmed_when_all_of_it_was_typed(wind: Session) -> None:
     assert [m.value for m in marks(wind, "Floors")] == [True, False]
     field(wind, "Floors", "Elevation").value = "8.5 m"
     assert [m.value for m in marks(wind, "Floors")] == [True, False]
+
+
+def test_a_refused_name_does_not_move_what_was_typed(wind: Session) -> None:
+    """A row whose new key was refused is confirmed when the rest of it is typed."""
+    field(wind, "Floors", "Elevation").value = "8 m"
+    with pytest.raises(InputError, match="already"):
+        wind.rename_row("floors", "Roof", "Level 2")
+    field(wind, "Floors", "Use").value = "plant"
+    assert marks(wind, "Floors")[0].value
+
+
+def test_what_was_typed_goes_with_a_renamed_row(wind: Session) -> None:
+    """A row renamed between two cells is confirmed by the second; its former key is forgotten."""
+    field(wind, "Floors", "Elevation").value = "8 m"
+    wind.rename_row("floors", "Roof", "Top")
+    field(wind, "Floors", "Use").value = "plant"
+    assert [m.value for m in marks(wind, "Floors")] == [True, False]
+
+
+def test_no_mark_stands_beside_a_refused_cell(wind: Session) -> None:
+    """A row with a text that was not taken has no mark until it is put right."""
+    cell = field(wind, "Floors", "Elevation")
+    cell.value = "8,5"
+    assert len(marks(wind, "Floors")) == 1
+    cell.value = "8.5"
+    assert len(marks(wind, "Floors")) == 2
+
+
+def test_a_changed_row_does_not_keep_its_source(wind: Session) -> None:
+    """The source was that of the former cells; a cell typed as it was keeps it."""
+    record = wind.job.record("wind")
+    cells = {"z": "7.2 m", "use": "roof"}
+    record.change(schedules={"floors": [RowRecord("Roof", cells, "drawing A-201")]})
+    record.save()
+    session = opened(WIND, wind.job)
+    session.enter_cell("floors", "Roof", "z", "7.2 m")
+    assert session.job.record("wind").schedules["floors"][0].source == "drawing A-201"
+    session.enter_cell("floors", "Roof", "z", "7.4 m")
+    assert session.job.record("wind").schedules["floors"][0].source == ""
 
 
 def test_a_row_is_confirmed_by_ticking(wind: Session) -> None:

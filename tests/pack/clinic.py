@@ -6,6 +6,7 @@ import math
 from typing import Any
 
 from calcbook.pack import Cover
+from calcbook.standing import is_unconfirmed
 
 Plain = dict[str, Any]
 SVG = (
@@ -76,6 +77,7 @@ def column(name: str, meaning: str, unit: str, role: str, texts: list[str], **mo
         "name": name, "number": "", "meaning": meaning, "unit": unit, "role": role, "formula": "",
         "cases": [], "clause": "", "note": "", "memory": False, "applies": True, "texts": texts,
         "si": [None] * len(texts), "total": None, "result": False, "problem": None, "used_by": [],
+        "typed": [f"{text} {unit}".strip() for text in texts] if role == "entered" else texts,
     }  # fmt: skip
     return given | more
 
@@ -105,7 +107,7 @@ def statement(workbook: str, title: str, *parts: Plain, **more: object) -> Plain
     checks = [i for i in items if i["kind"] == "check"]
     counts = {
         "entries": len(asked) + len(rows),
-        "unconfirmed": sum(not i["confirmed"] for i in asked) + sum(not c for c in rows),
+        "unconfirmed": sum(map(is_unconfirmed, items)) + sum(not c for c in rows),
         "checks": len(checks),
         "not_satisfied": sum(i["satisfied"] is False for i in checks),
         "problems": sum(bool(i["problem"]) or i["kind"] == "error" for i in items),

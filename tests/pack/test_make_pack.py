@@ -15,6 +15,7 @@ import pytest
 
 from calcbook.errors import PackError
 from calcbook.pack import make_pack
+from calcbook.pack.schedules import table
 
 HOSTILE = '#panic("x") *b* $x$ @ref <l> [ ] \\ "'
 
@@ -139,7 +140,40 @@ def test_first_page_counts(pages: list[str]) -> None:
     assert "Volume 1, 7th edition" in first
     assert "judgement of a licensed engineer" in first
     assert "local building code in force governs" in first
+    assert "moved on since taken" in first
     assert "same person" not in first
+
+
+def test_what_did_not_move_on_is_not_counted() -> None:
+    """A count of carried values that moved on is printed only where there are some."""
+    assert "moved on" not in texts(packed(one()))[0]
+
+
+def test_values_from_memory_are_listed(pages: list[str]) -> None:
+    """Each is listed with its clause and page, columns of a schedule too."""
+    first = next(page for page in pages if "Values from memory, to be confirmed" in page)
+    assert "2.8 Force coefficient of a wall maker's data p." in first
+    assert "3.1 Exposure coefficient at roof height Table 207B.3-1 p." in first
+    column = clinic.column("K_z", "Exposure", "", "computed", ["1"], formula="2*z", memory=True)
+    made = clinic.schedule("1.1", "s", "Levels", ["Roof"], columns=[column | {"number": "1.1.2"}])
+    counted = {**one()["counts"], "memory": 2}
+    remark = clinic.item("remark", "1.2", tone="caution", text="Torsion.", memory=True)
+    whole = " ".join(texts(packed(one(made, remark, counts=counted))))
+    assert "1.1 Exposure no clause named p." in whole
+    assert "1.2 Torsion. no clause named p." in whole
+    assert "Values from memory, to be confirmed" not in " ".join(texts(packed(one())))
+
+
+def test_words_left_empty_are_neither_confirmed_nor_waited_for() -> None:
+    """Nothing entered is said where it stands; it is not listed among what nobody confirmed."""
+    empty = {"text": "", "source": "", "confirmed": "", "fallback": False}
+    seen = clinic.item("text", "1.1", "seen_by", "Seen by", **empty)
+    revision = clinic.item("text", "1.2", "revision", "Revision", **(empty | {"text": "B"}))
+    whole = " ".join(texts(packed(one(seen, revision))))
+    assert whole.count("nothing entered") == 1
+    assert whole.count("1.1 Seen by") == 1
+    assert whole.count("1.2 Revision") == 2
+    assert "1 entry or row not confirmed" in whole
 
 
 @pytest.mark.parametrize("checked", ["RA", " ra "])
@@ -205,6 +239,84 @@ def test_header_row_is_repeated(pages: list[str]) -> None:
     assert all("floor kPa" in page for page in carrying)
     for row in range(1, 61):
         assert any(re.search(rf"Level {row} {round(3.9 * row, 1):g} ", page) for page in pages)
+
+
+@pytest.mark.parametrize("rows", [5, 40])
+def test_a_table_is_not_parted_from_its_title(rows: int) -> None:
+    """Wherever the page ends, the title stands with the head and the first three rows at least."""
+    keys = [f"Level {n}" for n in range(rows)]
+    columns = [clinic.column("p", "pressure", "kPa", "computed", ["1.0"] * rows, formula="2*z")]
+    table = clinic.schedule("1.90", "s", "Title of the table", keys, columns=columns)
+    split = 0
+    for count in range(36, 48, 2):
+        filling = [clinic.entry(f"1.{n}", "x", "filling", "5.5", "m") for n in range(count)]
+        pages = texts(packed(one(*filling, table)))
+        page = next(page for page in pages if "1.90 Title of the table" in page)
+        assert "Level 0" in page
+        assert "Level 2 " in page
+        split += "filling" not in page
+    assert 0 < split < 6
+
+
+def test_columns_are_explained_in_their_order() -> None:
+    """Symbols follow the columns; one worked below is named, cases of one formula are joined."""
+    cases = [("n == 1", "2*z"), ("n == 2", "2*z"), ("", "z")]
+    by_case = [{"when": when, "formula": formula, "holds": False} for when, formula in cases]
+    line = clinic.line("1.1.1", "w", "Worked", "z*2") | {"row": "A"}
+    item = clinic.schedule(
+        "1.1", "s", "Rows", ["A"],
+        columns=[
+            clinic.column("a", "First", "", "computed", ["1"], formula="z+1"),
+            clinic.column("z", "Height", "m", "entered", ["1"]),
+            clinic.column("w", "Worked", "", "computed", ["1"], formula="z*2"),
+            clinic.column("u", "Cases", "", "computed", ["1"], cases=by_case),
+        ],
+        envelope=[{"row": "A", "which": "largest", "column": "w", "meaning": "Worked",
+                   "value": clinic.value("1")}],
+        governing={"row": "A", "why": "largest w", "column": "w", "lines": [line]},
+    )  # fmt: skip
+    whole = " ".join(texts(packed(one(item))))
+    places = [whole.index(words) for words in (", First", "Height, entered; ", "Cases, by case:")]
+    assert places == sorted(places)
+    assert "Worked" in whole[places[1] : places[2]]
+    cases_told = whole[places[2] : whole.index("Row A")]
+    assert cases_told.count(" where ") == 1
+    assert cases_told.count(" or ") == 1
+    assert "otherwise" in cases_told
+
+
+def test_each_governing_row_is_headed() -> None:
+    """The lines of a row stand under its key and all it governs."""
+    lines = [
+        clinic.line(f"1.1.{n}", name, f"Worked {name} {row}", "2*z", value=clinic.value("1"))
+        | {"row": row}
+        for n, (row, name) in enumerate([("A", "M"), ("B", "N")])
+    ]
+    envelope = [
+        {"row": row, "which": which, "column": name, "meaning": "", "value": clinic.value("1")}
+        for row, which, name in [("A", "largest", "M"), ("B", "smallest", "N"), ("A", "least", "V")]
+    ]
+    item = clinic.schedule(
+        "1.1", "s", "Rows", ["A", "B"], envelope=envelope,
+        columns=[clinic.column("M", "M", "", "computed", ["1", "1"], formula="2*z")],
+        governing={"row": "A", "why": "largest M", "column": "M", "lines": lines},
+    )  # fmt: skip
+    whole = " ".join(texts(packed(one(item))))
+    whole = whole[whole.index("Row A") :]
+    found = [
+        whole.index(words)
+        for words in ("Row A, largest", ", least", "Worked M A", "Row B, smallest", "Worked N B")
+    ]
+    assert found == sorted(found)
+
+
+def test_only_what_is_shown_as_typed_is_marked() -> None:
+    """A cell typed in another unit is shown converted, and not underlined as if typed."""
+    column = clinic.column(
+        "z", "height", "m", "entered", ["3.658", "3.6"], typed=["12 ft", "3.6 m"]
+    )
+    item = clinic.schedule("1.1", "s", "Levels", ["A", "B"], columns=[column])
+    assert [cell["typed"] for cell in table(item)["columns"][1]["cells"]] == [False, True]
 
 
 def test_totals_are_printed(whole: str) -> None:

@@ -155,7 +155,7 @@ def test_code_set_switched_after_filling(job: Job) -> None:
     assert job.record(COLUMNS, "C-1").entries["rule"].value == "influence area"
     assert not review.troubles(statement)
     assert runner.statement(SCHEDULE)["counts"]["stale"] > 0
-    _, statements = pack_job(Job.load(job.folder))
+    statements = pack_job(Job.load(job.folder)).statements
     assert sum(s["counts"]["stale"] for s in statements) == 0
     assert all(s["code_set"]["name"] == "ASCE 7-16" for s in statements[1:])
     heads = [c["name"] for c in find_item(statements[-1], "base_loads")["columns"]]  # type: ignore[index]

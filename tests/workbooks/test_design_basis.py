@@ -6,14 +6,15 @@ import math
 from typing import TYPE_CHECKING
 
 import pytest
-from sheets import CODES, rows_of
+from sheets import CODES, Sheet, rows_of
 
 from calcbook.errors import CalcbookError
+from calcbook.job import Job, templates
+from calcbook.run import Filling, Runner
 
 if TYPE_CHECKING:
     from collections.abc import Callable
-
-    from sheets import Sheet
+    from pathlib import Path
 
     Fill = Callable[..., Sheet]
 
@@ -91,7 +92,7 @@ def test_flat_roof(tower: Sheet) -> None:
         ("X", "10 deg", 6.3 * 0.1763269807, 7.2),
         ("X", "10.001 deg", 6.3 * 0.1763449769, 7.2 + 6.3 * 0.1763449769 / 2),
         ("Y", "26.56505118 deg", 4.65, 7.2 + 2.325),
-        ("X", "0 deg", 0.0, 7.2),
+        ("X", "1 deg", 6.3 * 0.0174550649, 7.2),
     ],
 )
 def test_gable_roof(ridge: str, pitch: str, rise: float, mean: float, fill: Fill) -> None:
@@ -123,8 +124,8 @@ def test_us_customary_units(fill: Fill) -> None:
 @pytest.mark.parametrize(
     ("sets", "rows", "words"),
     [
-        ({"pitch": "75 deg", "roof": "gable"}, {}, ["pitch", "0 deg to 60 deg", "tabulated"]),
-        ({"pitch": "-5 deg", "roof": "gable"}, {}, ["pitch", "0 deg to 60 deg"]),
+        ({"pitch": "75 deg", "roof": "gable"}, {}, ["pitch", "1 deg to 60 deg", "tabulated"]),
+        ({"pitch": "-5 deg", "roof": "gable"}, {}, ["pitch", "1 deg to 60 deg"]),
         ({"o_x": "-1 m"}, {}, ["o_x", "0 m to 10 m"]),
         ({"roof": "hip"}, {}, ["roof", "flat, gable"]),
         ({"code_set": "NSCP 2010"}, {}, ["NSCP 2015"]),
@@ -149,3 +150,25 @@ def test_refused(
         run(BASIS, sets, rows)
     for word in words:
         assert word in str(caught.value)
+
+
+@pytest.mark.parametrize("pitch", ["10 deg", "20 deg", "0.17453292519943295 rad"])
+def test_a_carried_slope_is_the_slope_typed(pitch: str, tmp_path: Path) -> None:
+    """A pitch at a threshold, or at a point of a table, is still there after it was carried."""
+    names = (BASIS, "wind-pressure")
+    job = Job.start(tmp_path / "job", names, templates())
+    typed = {"roof": "gable", "ridge": "Y", "pitch": pitch}
+    job.record_path(BASIS).write_text(
+        f'format = 1\nworkbook = "{BASIS}"\n[entries]\n'
+        + "".join(f'{name} = {{ value = "{text}" }}\n' for name, text in typed.items()),
+        encoding="utf-8",
+    )
+    runner = Runner(job)
+    basis, carried = (Sheet(runner.statement(n), runner.books[n, None][0]) for n in names)
+    lengths = {"r_r": "r_r", "h": "h_m", "h_e": "h_eave", "L_x": "L_x", "L_y": "L_y"}
+    sets = {name: f"{basis.value(source)!r} m" for name, source in lengths.items()}
+    sets |= {"roof": "gable", "ridge": "Y", "theta": pitch}
+    book, statement = Runner().run(Filling(templates()["wind-pressure"], sets=sets))
+    alone = Sheet(statement, book)
+    for name in ("theta", "C_aX", "C_bX", "N_min", "V_max"):  # C_aX applies from 10 deg on
+        assert carried.value(name) == alone.value(name)
