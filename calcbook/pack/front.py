@@ -252,12 +252,18 @@ def software(statements: list[Statement]) -> dict[str, Any]:
         "limits": prose.read(LIMITS),
         "versions": [[[words(n)], [words(", ".join(v))]] for n, v in versions.items()],
         "fingerprints": list(_fingerprints(statements)),
-        "signs": [
-            [[words(printed_name(s))], [words(sign["quantity"])], [words(sign["positive"])]]
-            for s in statements
-            for sign in s.get("signs") or ()
-        ],
+        "signs": [[[words(text)] for text in row] for row in _signs(statements)],
     }
+
+
+def _signs(statements: list[Statement]) -> list[tuple[str, str, str]]:
+    """Return workbook, quantity and what is positive, once for all marks of a workbook."""
+    rows = (
+        (str(s["title"]), str(sign["quantity"]), str(sign["positive"]))
+        for s in statements
+        for sign in s.get("signs") or ()
+    )
+    return list(dict.fromkeys(rows))
 
 
 def _fingerprints(statements: list[Statement]) -> Iterator[Row]:
