@@ -283,7 +283,10 @@ USAGE = {
     "open nowhere": ("'nowhere' is not a job",),
     "run wnd-pressure": ("there is no workbook 'wnd-pressure'", "did you mean 'wind-pressure'?"),
     "run gone.ipynb": ("there is no notebook 'gone.ipynb'",),
-    "run snow": ("there is no workbook 'snow'", "there are: wind, column-accumulation, column-schedule, dead-load-take-off, "),
+    "run snow": (
+        "there is no workbook 'snow'",
+        "there are: wind, column-accumulation, ",
+    ),
     "run wind --rows levels=.": ("'.' is a folder", "name a CSV file"),
     "run wind:B.1.": ("'B.1.' cannot be a mark",),
     "run wind:B1": ("wind has no mark 'B1' in this job",),

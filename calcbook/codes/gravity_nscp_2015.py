@@ -32,7 +32,15 @@ _DIFFERENT: Mapping[str, Mapping[str, Any]] = {
     "live load factor": {"from_memory": True},
     "reducible floor": {"from_memory": True},
     "heavy floor": {"from_memory": True},
-    "garage floor": {"from_memory": True},
+    "garage floor": {
+        "cases": (
+            ("use == 'garage private'", "1.0"),
+            ("use != 'garage private'", "0.0"),
+        ),
+        "cases_us": (),
+        "note": "Private garages alone may be reduced; other garages are not.",
+        "from_memory": True,
+    },
     "heavy live load limit": {"from_memory": True},
     "column live load element factor": {
         "cases": members(dict.fromkeys(COLUMNS, "4")),
@@ -62,8 +70,12 @@ _DIFFERENT: Mapping[str, Mapping[str, Any]] = {
         "from_memory": True,
     },
     "heavy live load reduction": {
-        "formula": "where(K_LL >= 4, 0.8, 1.0)",
-        "note": "Columns alone, for which K_LL is 4, may have storage loads reduced by 20 %.",
+        "formula": "",
+        "cases": (
+            ("use == 'storage light' or use == 'storage heavy'", "where(K_LL >= 4, 0.8, 1.0)"),
+            ("use != 'storage light' and use != 'storage heavy'", "1.0"),
+        ),
+        "note": "Columns alone (K_LL 4) may have storage reduced by 20 %, and no other use.",
         "from_memory": True,
     },
     "garage live load reduction": {

@@ -20,6 +20,7 @@ class Floor:
     pool: str
     own: float
     on_grade: bool = False
+    use: str = ""
 
 
 @dataclass(frozen=True)
@@ -57,12 +58,18 @@ def pooled(code: str, pool: str, carried: list[Floor], k: float, *, parking: boo
     if pool == "yes":
         return reduction(code, area, count, k)
     if pool == "heavy":
-        return 0.8 if (count >= 2 or code == "NSCP 2015") else 1.0
+        return 0.8 if count >= 2 and code == "ASCE 7-16" else 1.0
     if pool == "garage" and parking:
         if code == "ASCE 7-16":
             return 0.8 if count >= 2 else 1.0
         return 1.0 if k * area < 40.0 else max(0.6, 0.25 + 4.57 / math.sqrt(k * area))
     return 1.0
+
+
+def stored(code: str, floor: Floor) -> float:
+    """Return what NSCP leaves of a storage load on a column, 1 for any other load or code."""
+    storage = floor.use.startswith("storage") and floor.live > HEAVY
+    return 0.8 if storage and code == "NSCP 2015" else 1.0
 
 
 def accumulate(
@@ -80,8 +87,8 @@ def accumulate(
             part = [f for f in down if pool_of(f) == pool]
             r = pooled(code, pool, part, k, parking=parking) if part else 1.0
             live_0 += sum(f.live * f.area for f in part)
-            live += r * sum(f.live * f.area for f in part)
-            live_1 += r * sum(factor(f) * f.live * f.area for f in part)
+            live += sum(r * stored(code, f) * f.live * f.area for f in part)
+            live_1 += sum(r * stored(code, f) * factor(f) * f.live * f.area for f in part)
         found.append(
             Force(
                 D=sum(f.dead * f.area for f in down) + own,

@@ -164,7 +164,8 @@ def test_the_printed_rate_gives_little(fill: Fill) -> None:
 
 USES = {
     "office": (2.4, 2.4, "yes"), "hospital ward": (1.9, 1.92, "yes"),
-    "library stack": (7.2, 7.18, "heavy"), "garage private": (1.9, 1.92, "garage"),
+    "library stack": (7.2, 7.18, "heavy"), "storage light": (6.0, 6.0, "heavy"),
+    "garage private": (1.9, 1.92, "garage"),
     "assembly fixed seats": (2.9, 2.87, "assembly"), "roof": (1.0, 0.96, "roof"),
 }  # fmt: skip
 
@@ -173,7 +174,7 @@ def random_stack(code: str, draw: random.Random) -> tuple[list[dict[str, str]], 
     """Return the same random stack as rows of the workbook and as floors for the hand."""
     rows, floors = [], []
     for n in range(draw.randint(3, 12)):
-        use = "roof" if n == 0 else draw.choice([*USES, "as typed"][:5])
+        use = "roof" if n == 0 else draw.choice([*USES, "as typed"][:6])
         area, dead, least = (round(draw.uniform(*r), 3) for r in ((2, 80), (3, 9), (1, 3)))
         added = round(draw.choice([0.0, 0.0, draw.uniform(0, 4)]), 2) if use != "roof" else 0.0
         side = draw.randint(200, 900)
@@ -185,7 +186,7 @@ def random_stack(code: str, draw: random.Random) -> tuple[list[dict[str, str]], 
         ))  # fmt: skip
         pool = USES[use][2] if use in USES else "yes"
         own = 23.6 * (side / 1000) ** 2 * 3.0
-        floors.append(Floor(area, dead, least, load + added, pool, own, grade))
+        floors.append(Floor(area, dead, least, load + added, pool, own, grade, use))
     return rows, floors
 
 

@@ -197,3 +197,44 @@ def test_cells_of_the_other_code_are_listed_as_not_used(fill: Fill) -> None:
     assert nscp.column("live", "L_o") == pytest.approx([2400.0])
     assert nscp.book.not_used() == ["levels, partitions"]
     assert asce.book.not_used() == []
+
+
+def test_suction_on_the_roof_lifts_the_column(fill: Fill) -> None:
+    """The uplift of the roof acts on its area from the top down, also in a column of gravity."""
+    rows = stack(
+        level("Roof", "40 m2", "1 kPa", "roof", D_min="0.5 kPa"),
+        level("1", "30 m2", "5 kPa", "office", D_min="4 kPa"),
+    )
+    sheet = fill(BOOK, {**TYPED, "p_up": "-2.5 kPa"}, rows)
+    assert kilonewtons(sheet, "column", "P_Wt") == pytest.approx([-100.0, -100.0])
+    least = kilonewtons(sheet, "column", "P_Dmin")
+    expected = [0.9 * least[0] - 100, 0.9 * least[1] - 100]
+    assert kilonewtons(sheet, "column", "P_up") == pytest.approx(expected)
+    said = [i["text"] for i in sheet.items() if i["kind"] == "remark" and i["applies"]]
+    assert any(text.startswith("The column lifts at a level") for text in said)
+    calm = fill(BOOK, TYPED, rows)
+    assert kilonewtons(calm, "column", "P_Wt") == [0.0, 0.0]
+
+
+def test_live_load_added_on_a_roof_counts(fill: Fill) -> None:
+    """What is typed beside the use of a roof is live load of no pool, not roof live load."""
+    rows = stack(
+        level("Roof", "40 m2", "4 kPa", "roof", L_a="2 kPa"),
+        level("1", "40 m2", "4 kPa", "office"),
+    )
+    sheet = fill(BOOK, TYPED, rows)
+    assert kilonewtons(sheet, "column", "P_L0")[0] == pytest.approx(80.0)
+    assert kilonewtons(sheet, "column", "P_L")[0] == pytest.approx(80.0)
+
+
+def test_other_garages_and_heavy_uses_are_not_reduced(fill: Fill) -> None:
+    """NSCP: private garages and storage alone are reduced among garages and heavy floors."""
+    sets = {**TYPED, "parking": "as the code permits"}
+    for use, left in (
+        ("garage storage", 1.0),
+        ("manufacturing light", 1.0),
+        ("storage light", 0.8),
+    ):
+        sheet = fill(BOOK, sets, stack(*(level(str(n), "100 m2", "4 kPa", use) for n in "12")))
+        full, reduced = (kilonewtons(sheet, "column", name)[-1] for name in ("P_L0", "P_L"))
+        assert reduced == pytest.approx(left * full), use
