@@ -360,3 +360,18 @@ def test_layers_may_come_from_a_file_of_rows(fill: Fill) -> None:
                    layer("R", "R1", g_a="1 kPa"), layer("G", "G1", g_a="1 kPa"),
                    layer("E", "E1", g_a="1 kPa"))  # fmt: skip
     assert fill(BOOK, None, many).by_key("build_ups", "D_b")["F1"] == pytest.approx(30e3)
+
+
+def test_layers_that_are_all_certain_meet_their_load(fill: Fill) -> None:
+    """Where every layer is certain both loads are one, and rounding does not fail the check."""
+    stated = [("F", "0 kPa")] * 4 + [("R", "0.20 kPa"), ("R", "0.10 kPa")]
+    base = [slab("F0", "F", "100 mm"), slab("R0", "R", "10 mm"), slab("E0", "E", "100 mm")]
+    layers = [
+        layer(
+            f"L{n}", of, g_a=g, t_l="0 mm", made_of="steel", part=part, certain="yes", lies="slope"
+        )
+        for n, (of, g) in enumerate(stated)
+        for part in ["superimposed" if g == "0.20 kPa" else "self"]
+    ]
+    sheet = fill(BOOK, PITCHED, building(layers=[*base, *layers]))
+    assert all(sheet.checks().values())
