@@ -27,8 +27,8 @@ if TYPE_CHECKING:
 
 STACKS, LEVELS = 1_000, 60
 AGREE = 1e-9
-USES = ("office", "hospital ward", "library stack", "assembly fixed seats", "garage private")
-LOADS = {"roof": 1.0, "office": 2.4, "hospital ward": 1.9, "library stack": 7.2,
+USES = ("office", "hospital ward", "storage light", "assembly fixed seats", "garage private")
+LOADS = {"roof": 1.0, "office": 2.4, "hospital ward": 1.9, "storage light": 6.0,
          "assembly fixed seats": 2.9, "garage private": 1.9}  # fmt: skip
 
 
@@ -96,7 +96,7 @@ def by_numpy(
     live = np.array([1e3 * LOADS[u] for u in use])[:, None]
     kind = {u: np.array([one == u for one in use])[:, None] for u in LOADS}
     by_area = kind["office"] | kind["hospital ward"]
-    heavy, garage, assembly = kind["library stack"], kind["garage private"], kind[USES[3]]
+    heavy, garage, assembly = kind["storage light"], kind["garage private"], kind[USES[3]]
     own = gamma * section * height
     line = np.array([12e3 if n == LEVELS - 7 else 0.0 for n in range(LEVELS)])[:, None]
     P_D = np.cumsum(dead * area + line + own, axis=0)  # noqa: N806  the workbook's names

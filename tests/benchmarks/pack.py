@@ -19,10 +19,9 @@ from typing import Any
 
 import timing
 
-from calcbook.job import Job, template_folder, templates
+from calcbook.job import Job, template_folder
 
 ROUNDS = 5
-WORKBOOKS = ("design-basis", "wind-pressure")
 TWICE = Path(__file__).with_name("pack_twice.py")
 
 
@@ -36,7 +35,7 @@ def main() -> None:
 def from_nothing(folder: Path) -> None:
     """Compare the pack of the demo job with its notebooks run and exported, in fresh processes."""
     job = demo_job(folder / "job")
-    notebooks = [str(job / f"{name}.ipynb") for name in WORKBOOKS]
+    notebooks = [str(job / f"{name}.ipynb") for name in Job.load(job).workbooks]
     commands = {
         "pack": ["calcbook.cli", "pack", str(job), "--output", str(folder / "pack.pdf")],
         "nbconvert": ["jupyter", "nbconvert", "--execute", "--to", "html",
@@ -96,10 +95,7 @@ def parts(seconds: dict[str, Any]) -> str:
 
 def demo_job(folder: Path) -> Path:
     """Make the demo job and return its folder."""
-    known = templates()
-    Job.start(folder, WORKBOOKS, {name: known[name] for name in WORKBOOKS})
-    for record in (template_folder() / "demo").glob("*.toml"):
-        shutil.copyfile(record, folder / record.name)
+    shutil.copytree(template_folder() / "demo", folder, ignore=shutil.ignore_patterns(".*"))
     return folder
 
 
