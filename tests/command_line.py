@@ -10,6 +10,7 @@ from typing import TYPE_CHECKING, Any
 from notebooks import contents
 
 from calcbook.cli import main
+from calcbook.statement import twelve_digits
 
 if TYPE_CHECKING:
     from pathlib import Path
@@ -35,6 +36,7 @@ def printed(capsys: pytest.CaptureFixture[str], *words: str, status: int = 0) ->
 def results(capsys: pytest.CaptureFixture[str], *words: str, status: int = 0) -> dict[str, Any]:
     """Run a workbook and return its results as plain data."""
     found: dict[str, Any] = json.loads(printed(capsys, "run", *words, "--json", status=status))
+    assert found == twelve_digits(found), "JSON results carry twelve significant digits"
     return found
 
 

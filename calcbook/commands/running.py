@@ -24,7 +24,7 @@ from calcbook.csvrows import CaseTable, Header, read_cases
 from calcbook.errors import CalcbookError, JobError, near_match
 from calcbook.job import template_folder
 from calcbook.run import Filling, Runner, all_items
-from calcbook.statement import twelve
+from calcbook.statement import twelve, twelve_digits
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -55,7 +55,10 @@ def run(arguments: Namespace) -> int:
         book, statement = Runner(target.job, progress).run(filling, strict=True)
         if arguments.cases is not None:
             return _run_cases(book, arguments.cases, progress, as_json=arguments.json)
-    print(json.dumps(as_json(statement), indent=2) if arguments.json else text_report(statement))
+    if arguments.json:
+        print(json.dumps(twelve_digits(as_json(statement)), indent=2))
+    else:
+        print(text_report(statement))
     sys.stdout.flush()
     troubles = review.troubles(statement)
     if troubles:
