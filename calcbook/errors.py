@@ -12,6 +12,7 @@ CalcbookError
         RecordChangedError          a record that was changed by someone else
     JobError (ValueError)           a job folder that is missing, taken or wrong
         CarryError                  a value that cannot be carried between workbooks
+    StaticsError (ValueError)       a beam or truss that cannot stand, or a load it cannot carry
     PackError (RuntimeError)        a pack that cannot be made
     UsageError (ValueError)         a command that cannot be understood
 """
@@ -146,6 +147,20 @@ class JobError(CalcbookError, ValueError):
 
 class CarryError(JobError):
     """A value that cannot be carried from one workbook to another."""
+
+
+class StaticsError(CalcbookError, ValueError):
+    """A beam or truss that cannot stand, or a load it cannot carry.
+
+    Attributes
+    ----------
+    named
+        The labels of what is wrong: joints, members, supports, spans.
+    """
+
+    def __init__(self, what: str, *, hint: str = "", named: Iterable[str] = ()) -> None:
+        super().__init__(what, hint=hint)
+        self.named = tuple(named)
 
 
 class PackError(CalcbookError, RuntimeError):
