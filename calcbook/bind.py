@@ -7,7 +7,7 @@ from dataclasses import dataclass, field, replace
 from functools import lru_cache
 from typing import TYPE_CHECKING
 
-from calcbook import figures, units
+from calcbook import figures, solving, units
 from calcbook.dimensions import Type, check, check_printed
 from calcbook.errors import CalcbookError, DeclarationError, FormulaError, near_match
 from calcbook.formula import parse
@@ -21,6 +21,8 @@ from calcbook.items import (
     Item,
     Line,
     Schedule,
+    Solved,
+    Solver,
     TableItem,
     Text,
 )
@@ -28,7 +30,7 @@ from calcbook.spelling import check_name
 from calcbook.tree import Compare, Name, Node, names, walk
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping, Sequence
+    from collections.abc import Callable, Iterable, Mapping, Sequence
 
     from calcbook.section import Section
 
@@ -68,6 +70,11 @@ class Bound:
     def name(self) -> str:
         """The name formulas use."""
         return self.item.name
+
+    @property
+    def is_words(self) -> bool:
+        """Whether it is a line whose value is text: what a solver says in words."""
+        return isinstance(self.item, Line) and self.type is not None and self.type.form == "text"
 
 
 class Binder:
@@ -118,7 +125,7 @@ class Binder:
         what = bound.name or bound.item.meaning or type(bound.item).__name__.lower()
         return f'{self.where}, section "{bound.section.title}", {what}'
 
-    def _bind(self, bound: Bound) -> None:
+    def _bind(self, bound: Bound) -> None:  # noqa: C901  one case per kind of item
         item = bound.item
         if isinstance(item, Broken):
             raise DeclarationError(item.text)
@@ -129,6 +136,10 @@ class Binder:
             self._declare(bound, _given_type(item))
         elif isinstance(item, TableItem):
             self._declare(bound, Type("table", None, None, table=item.table))
+        elif isinstance(item, Solver):
+            self._bind_solver(bound, item)
+        elif isinstance(item, Solved):
+            self._bind_solved(bound, item)
         elif isinstance(item, Line):
             self._bind_line(bound, item)
         elif isinstance(item, Check):
@@ -230,6 +241,43 @@ class Binder:
             )
         rows = bound.schedule.rows if bound.schedule is not None else None
         self._declare(bound, Type("number", found.dimension, rows))
+
+    def _bind_solver(self, bound: Bound, item: Solver) -> None:
+        bound.branches = ((None, solving.bind(item, self.scope, self._look_up(bound))),)
+        self._declare(bound, Type("solution", None, None))
+
+    def _bind_solved(self, bound: Bound, item: Solved) -> None:
+        self._look_up(bound)(item.of)
+        home = self.home.get(item.of)
+        if home is None or not isinstance(home.item, Solver):
+            raise DeclarationError(
+                f"{item.of} is no solver of this workbook",
+                hint="name the item that s.solver() declared, with of=",
+            )
+        rows = bound.schedule.rows if bound.schedule is not None else None
+        node, found = solving.bind_found(item, home.item, rows, self.scope)
+        bound.branches = ((None, node),)
+        if found.dimension is not None:
+            item.kind = item.kind or solving.kind(item, home.item, found)
+            if item.kind.dimension != found.dimension:
+                raise FormulaError(
+                    f"the solver gives {_words(found)}, the line is to be shown as "
+                    f"{units.dimension_name(item.kind.dimension)}"
+                )
+        self._declare(bound, found)
+
+    def _look_up(self, bound: Bound) -> Callable[[str], Name]:
+        """Return a function that looks a declared name up, and notes that the item needs it."""
+
+        def look_up(name: str) -> Name:
+            check_name(name, name, (0, len(name)))
+            self._read(name, bound)
+            if name not in self.scope:
+                hint = near_match(name, self.scope) or "declare it above"
+                raise DeclarationError(f"there is no '{name}' to hand to the solver", hint=hint)
+            return Name(name)
+
+        return look_up
 
     def _bind_test(self, test: Node, text: str, bound: Bound) -> None:
         found = check(test, self.scope, text)

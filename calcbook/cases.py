@@ -120,7 +120,7 @@ def compute(
     """
     with np.errstate(all="ignore"):
         found = program.compute(values, rows)[1]
-    return {bound.name: value for bound, value in zip(program.lines, found, strict=True)}
+    return {bound.name: value for bound, value in zip(program.computed, found, strict=True)}
 
 
 def evaluate(book: Workbook, columns: Mapping[str, Sequence[str]]) -> dict[str, np.ndarray]:
@@ -142,7 +142,7 @@ def evaluate(book: Workbook, columns: Mapping[str, Sequence[str]]) -> dict[str, 
 
 def result_lines(book: Workbook) -> list[Bound]:
     """Return the lines given per case: the results declared, or every line when none is."""
-    lines = [b for b in book.program.lines if b.schedule is None]
+    lines = [b for b in book.program.lines if b.schedule is None and not b.is_words]
     return [b for b in lines if getattr(b.item, "result", False)] or lines
 
 

@@ -9,16 +9,19 @@ for single values.
 from __future__ import annotations
 
 import math
+from functools import partial
 from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 
 from calcbook.keyed import lookup, lookup_rows, sum_for, sum_for_rows
+from calcbook.solvers import outcome, solve
 from calcbook.tree import (
     KEYED,
     Binary,
     Call,
     Compare,
+    Found,
     Logic,
     Name,
     Negative,
@@ -26,6 +29,7 @@ from calcbook.tree import (
     Not,
     Number,
     Quoted,
+    Solve,
 )
 from calcbook.units import read_quantity
 
@@ -119,6 +123,25 @@ class _Writer:
                 if self.array or inner.column:
                     return _Source(f"f_not({inner.text})", _ATOM, inner.column)
                 return _Source(f"not {_inside(inner, _NOT)}", _NOT, column=False)
+            case Solve(solver=solver):
+                return _Source(f"f_solve({solver!r}, {self.given(node)})", _ATOM, column=False)
+            case Found(solution=solution, outcome=wanted, case=case, rows=rows):
+                length = f"len(z_{rows})" if rows is not None else "None"
+                text = f"f_outcome({self.name(solution.name).text}, {wanted!r}, {case!r}, {length})"
+                return _Source(text, _ATOM, column=rows is not None)
+
+    def given(self, node: Solve) -> str:
+        """Return what a solver takes as the source of a dictionary, those of a role by case."""
+        roles: dict[str, list[str]] = {}
+        for role, case, name in node.takes:
+            value = self.name(name.name).text
+            roles.setdefault(role, []).append(f"{case!r}: {value}" if case else value)
+        by_case = {role for role, case, _ in node.takes if case}
+        parts = (
+            f"{role!r}: {{{', '.join(found)}}}" if role in by_case else f"{role!r}: {found[0]}"
+            for role, found in roles.items()
+        )
+        return f"{{{', '.join(parts)}}}"
 
     def name(self, name: str) -> _Source:
         column = name in self.scope and self.scope[name].rows is not None
@@ -245,6 +268,7 @@ def namespace(array: bool) -> dict[str, object]:
     by_key = {
         "f_lookup": lookup, "f_lookup_rows": lookup_rows,
         "f_sum_for": sum_for, "f_sum_for_rows": sum_for_rows,
+        "f_solve": partial(solve, array=array), "f_outcome": outcome,
     }  # fmt: skip
     wide = {f"f_{name}": function for name, function in _WIDE.items()}
     shared = {f"f_{name}": function for name, function in _SHARED.items()}

@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, TypedDict, Unpack
 from calcbook import units
 from calcbook.errors import CalcbookError, DeclarationError, near_match
 from calcbook.formula import split_definition
-from calcbook.items import Broken, Choice, Entry, Handle, Item, Line, Text
+from calcbook.items import Broken, Choice, Entry, Handle, Item, Line, Solved, Text
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterable, Sequence
@@ -215,6 +215,47 @@ class Declarations:
             )
 
         return self._guarded(build, named, formula)
+
+    def solved(
+        self,
+        name: str,
+        meaning: str,
+        *,
+        of: str,
+        gives: str,
+        case: str = "",
+        unit: str = "",
+        result: bool = False,
+        sign: str = "",
+        **common: Unpack[Common],
+    ) -> Handle:
+        """Declare a line whose value a solver found.
+
+        Parameters
+        ----------
+        of
+            The name of the solver item, declared with ``s.solver``.
+        gives
+            The outcome wanted ('reaction'), of a load ``case`` where it is asked by case. In a
+            schedule it runs over the rows; it may be words ('tension').
+        unit, result, sign
+            As for ``line``.
+        """
+        return self._guarded(
+            lambda: Solved(
+                name=name,
+                meaning=meaning,
+                of=of,
+                outcome=gives,
+                case=case,
+                kind=measure(unit) if unit else None,
+                result=result,
+                sign=sign,
+                **common_parts(common),
+            ),
+            name,
+            f"{of}: {gives} {case}".strip(),
+        )
 
     def clause(
         self,

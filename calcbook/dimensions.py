@@ -16,6 +16,7 @@ from calcbook.tree import (
     Binary,
     Call,
     Compare,
+    Found,
     Logic,
     Name,
     Negative,
@@ -23,6 +24,7 @@ from calcbook.tree import (
     Not,
     Number,
     Quoted,
+    Solve,
     names,
     walk,
 )
@@ -139,7 +141,7 @@ def _constant(node: Node) -> float | None:
 class _Checker(Rules):
     """The rules of the signs, one method per kind of node."""
 
-    def type(self, node: Node) -> Type:  # noqa: PLR0911  one case per kind of node
+    def type(self, node: Node) -> Type:  # noqa: C901, PLR0911  one case per kind of node
         match node:
             case Number():
                 return _PLAIN
@@ -159,6 +161,8 @@ class _Checker(Rules):
                 return self.truth([operand], "not")
             case Logic(op=op, parts=parts):
                 return self.truth(parts, op)
+            case Solve() | Found():
+                raise FormulaError("a solver is declared, it stands in no formula", text=self.text)
 
     def quantity(self, node: Quoted) -> Type:
         try:

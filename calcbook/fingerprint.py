@@ -6,7 +6,7 @@ import hashlib
 import json
 from typing import TYPE_CHECKING, Any
 
-from calcbook.items import Check, Line, Schedule, TableItem
+from calcbook.items import Check, Line, Schedule, Solved, Solver, TableItem
 from calcbook.shown import twelve
 
 if TYPE_CHECKING:
@@ -59,7 +59,11 @@ def _formulas(bound: Bound) -> list[object]:
     """Return what an item's value depends on, apart from inputs."""
     item = bound.item
     basis: list[object] = [type(item).__name__, item.name, item.when, bound.section.when]
-    if isinstance(item, Line):
+    if isinstance(item, Solved):
+        basis += [item.of, item.outcome, item.case]
+    elif isinstance(item, Solver):
+        basis += [item.by, {role: item.takes[role] for role in sorted(item.takes)}]
+    elif isinstance(item, Line):
         takes = sorted((n, u.text) for n, u in item.takes.items())
         gives = item.gives.text if item.gives is not None else ""
         basis += [item.formula, [list(c) for c in item.cases], takes, gives]

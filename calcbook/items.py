@@ -121,6 +121,26 @@ class Line(Item):
 
 
 @dataclass(eq=False)
+class Solver(Item):
+    """A solver of the package at work: ``by`` names it, ``takes`` the names in its roles.
+
+    A role that is filled by load case has a mapping from case to name.
+    """
+
+    by: str = ""
+    takes: Mapping[str, str | Mapping[str, str]] = field(default_factory=dict)
+
+
+@dataclass(eq=False)
+class Solved(Line):
+    """A line whose value a solver found: an ``outcome`` of the solver item ``of``."""
+
+    of: str = ""
+    outcome: str = ""
+    case: str = ""
+
+
+@dataclass(eq=False)
 class TableItem(Item):
     """A table of the code set, or of a maker, that formulas interpolate in."""
 

@@ -6,8 +6,10 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
+from calcbook import solving
 from calcbook.bind import symbols
 from calcbook.formula import parse
+from calcbook.items import Solved, Solver
 from calcbook.keyed import texts
 from calcbook.printer import place_of
 from calcbook.shown import plain_value
@@ -85,14 +87,24 @@ class LineWriter:
             ],
             "takes": {n: u.text for n, u in item.takes.items()},
             "gives": item.gives.text if item.gives is not None else "",
+            "solved": self._solved(item),
             "result": item.result,
             "sign": self.signs.get(item.sign, "") if item.sign else "",
         }
+
+    def _solved(self, item: Line) -> Plain | None:
+        """Return which outcome of which solver a line is, or None for a formula."""
+        home = self.shown.scope.get(item.of) if isinstance(item, Solved) else None
+        if not isinstance(item, Solved) or home is None or not isinstance(home.item, Solver):
+            return None
+        return {"of": item.of, "number": home.number, "words": solving.words(item, home.item)}
 
     def substitution(self, bound: Bound, formula: str, row: int | None = None) -> Plain:
         """Return what a reader substitutes for each name of a formula; columns stay symbols."""
         own = bound.type.rows if bound.type is not None else None
         values: Plain = {}
+        if not formula:
+            return values
         for name in symbols(formula):
             home = self.shown.scope.get(name)
             if home is None or home.type is None or home.type.form == "table":

@@ -8,8 +8,9 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from calcbook.compile import OutsideTableError
+from calcbook.errors import StaticsError
 from calcbook.formula import parse
-from calcbook.items import Check, Line
+from calcbook.items import Check, Line, Solver
 from calcbook.keyed import MissingRowError, texts
 from calcbook.program import decide
 from calcbook.tree import KEYED, Call, Logic, Not, Quoted, accumulated, gathered, names, walk
@@ -58,18 +59,19 @@ class LineByLine:
         applies, reason = self._applies(bound)
         if bound.guards:
             self.found.applies[bound.number] = applies
-        if isinstance(bound.item, Line):
+        computed = isinstance(bound.item, (Line, Solver))
+        if computed:
             self.found.values[bound.name] = None
         if not applies:
             return
         reason = reason or self._missing(bound)
-        if not reason and isinstance(bound.item, Line):
+        if not reason and computed:
             reason = self._line(step)
         elif not reason and isinstance(bound.item, Check):
             reason = self._check(step)
         if reason:
             self.found.problems[bound.number] = reason
-            if isinstance(bound.item, Line):
+            if computed:
                 self.bad[bound.name] = reason
             elif isinstance(bound.item, Check):
                 self.found.checks[bound.number] = (None, None, None)
@@ -162,6 +164,13 @@ class LineByLine:
             return _failure(error, idle)
         if value is None:
             return "has no value: none of its cases holds"
+        return self._keep(bound, value)
+
+    def _keep(self, bound: Bound, value: Value) -> str:
+        """Put the value of a line into the results; returns why it is none, or ''."""
+        if bound.is_words or isinstance(bound.item, Solver):
+            self.found.values[bound.name] = value
+            return ""
         if bound.schedule is None:
             if not isinstance(value, float) or not math.isfinite(value):
                 return self._missing_row(self._wanted(bound), 0) or "has no finite value"
@@ -268,6 +277,8 @@ def _keyed_names(node: Node) -> set[str]:
 
 def _failure(error: Exception, idle: Sequence[str]) -> str:
     """Return why a formula gave nothing; ``idle`` are the names in it that do not apply."""
+    if isinstance(error, StaticsError):
+        return f"has no value: {error.what}" + (f"; {error.hint}" if error.hint else "")
     if isinstance(error, TypeError):
         verb = "do" if len(idle) > 1 else "does"
         return f"not available because {' and '.join(idle) or 'a value'} {verb} not apply"

@@ -17,6 +17,7 @@ from calcbook.tree import (
     Binary,
     Call,
     Compare,
+    Found,
     Logic,
     Name,
     Negative,
@@ -24,6 +25,7 @@ from calcbook.tree import (
     Not,
     Number,
     Quoted,
+    Solve,
 )
 from calcbook.units import read_quantity
 
@@ -95,7 +97,7 @@ class _Builder:
         self.values = values
         self.symbolic = symbolic
 
-    def build(self, node: Node) -> Any:  # noqa: PLR0911  one case per kind of node
+    def build(self, node: Node) -> Any:  # noqa: C901, PLR0911  one case per kind of node
         match node:
             case Number(text=text):
                 return self.number(text)
@@ -116,6 +118,8 @@ class _Builder:
                 return join(*(self.build(part) for part in parts))
             case Not(operand=operand):
                 return self.sympy.Not(self.build(operand))
+            case Solve() | Found():
+                raise FormulaError("a solver has no formula")
 
     def number(self, text: str) -> Any:
         exact = self.sympy.Rational(text)

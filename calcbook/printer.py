@@ -12,12 +12,14 @@ from abc import ABC, abstractmethod
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, ClassVar, NamedTuple
 
+from calcbook.errors import FormulaError
 from calcbook.symbols import Sign, read_figure, split_quantity, symbol_parts, unit_parts
 from calcbook.tree import (
     KEYED,
     Binary,
     Call,
     Compare,
+    Found,
     Logic,
     Name,
     Negative,
@@ -25,6 +27,7 @@ from calcbook.tree import (
     Not,
     Number,
     Quoted,
+    Solve,
     names,
     walk,
 )
@@ -208,7 +211,7 @@ class Printer(ABC):
 
     # --- the tree ---------------------------------------------------------------------------
 
-    def write(self, node: Node) -> Piece:  # noqa: PLR0911  one case per kind of node
+    def write(self, node: Node) -> Piece:  # noqa: C901, PLR0911  one case per kind of node
         """Print a tree."""
         match node:
             case Number(text=text):
@@ -233,6 +236,8 @@ class Printer(ABC):
             case Not(operand=operand):
                 text = self.row(self.words("not "), self.inside(self.write(operand), NOT))
                 return Piece(text, NOT, "other", "other")
+            case Solve() | Found():
+                raise FormulaError("a solver is declared, it stands in no formula")
 
     def inside(self, piece: Piece, level: int) -> str:
         """Return a piece, in brackets if it holds less tightly than its surroundings."""

@@ -18,7 +18,7 @@ import numpy as np
 
 from calcbook.compile import namespace
 from calcbook.formula import parse
-from calcbook.items import Check, Line
+from calcbook.items import Check, Line, Solver
 from calcbook.source import Source
 from calcbook.tree import Compare, Node, names
 from calcbook.verdict import worst
@@ -43,7 +43,8 @@ class Results:
     Attributes
     ----------
     values
-        Scalars as floats or option texts, columns as arrays of shape (rows,), in coherent SI.
+        Scalars as floats or option texts, columns as arrays of shape (rows,), in coherent SI;
+        the solutions of solvers.
     applies
         False for an item whose conditions do not hold.
     branch
@@ -97,7 +98,8 @@ class Program:
         self.scope = scope
         self.array = array
         self.lines = [b for b in self.bound if isinstance(b.item, Line)]
-        computed = {b.name for b in self.lines}
+        self.computed = [b for b in self.bound if isinstance(b.item, (Line, Solver))]
+        computed = {b.name for b in self.computed}
         self.inputs = [n for n, kind in scope.items() if n not in computed and kind.form != "truth"]
         self.rows = list(dict.fromkeys(b.rows for b in self.bound if b.rows))
         self.space = namespace(array=array) | {
@@ -106,14 +108,14 @@ class Program:
         self._source = Source(self.bound, scope, array=array)
         self._function = self._compile()
         self._given = _picker(self.inputs)
-        self._names = [b.name for b in self.lines]
+        self._names = [b.name for b in self.computed]
         self._split = [b.number for b in self._source.split]
-        self._columns = [b.name for b in self.lines if b.schedule is not None]
+        self._columns = [b.name for b in self.lines if b.schedule is not None and not b.is_words]
         self._guarded = self._guard_places()
         self._nodes: dict[Node, CodeType] = {}
 
     def _compile(self) -> Callable[..., Computed]:
-        text = self._source.function(self.inputs, self.lines, self.rows)
+        text = self._source.function(self.inputs, self.computed, self.rows)
         exec(compile(text, "<workbook>", "exec"), self.space)  # noqa: S102  source made from checked trees
         return self.space["program"]  # type: ignore[return-value]
 
@@ -210,7 +212,7 @@ class Program:
             (self.code(test) if test is not None else None, _compiled(source.branch(bound, place)))
             for place, (test, _) in enumerate(bound.branches)
         )
-        if isinstance(bound.item, Line):
+        if isinstance(bound.item, (Line, Solver)):
             whole = _compiled(source.selected(bound)) if bound.schedule is not None else None
             used = tuple(names(node) for _, node in bound.branches)
             return Step(bound, guards, branches, whole, used=used)

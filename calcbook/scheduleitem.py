@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from calcbook import units
-from calcbook.items import Carry, Choice, Entry, Item, Line, Schedule, Text
+from calcbook.items import Carry, Choice, Entry, Item, Line, Schedule, Solved, Text
+from calcbook.keyed import texts
 from calcbook.shown import Printed, Shown, finite, plain_value
 
 if TYPE_CHECKING:
@@ -25,6 +26,7 @@ ROLES: dict[type[Item], str] = {
     Choice: "choice",
     Carry: "carried",
     Line: "computed",
+    Solved: "computed",
 }
 
 
@@ -73,7 +75,7 @@ class ScheduleWriter:
             "number": bound.number,
             "meaning": item.meaning,
             "unit": "",
-            "role": ROLES[type(item)],
+            "role": "text" if bound.is_words else ROLES[type(item)],
             "clause": item.clause,
             "note": item.note,
             "memory": item.memory,
@@ -84,6 +86,7 @@ class ScheduleWriter:
             "cases": [],
             "takes": {},
             "gives": "",
+            "solved": None,
             "problem": self._problems(bound, len(keys)),
             "total": None,
             "used_by": self.used_by.get(bound.name, []),
@@ -94,10 +97,16 @@ class ScheduleWriter:
             for case, holds in zip(plain["cases"], self._holding(bound, len(keys)), strict=False):
                 case["holds"] = holds
         if bound.type is not None and bound.type.form == "text":
-            words = self.readings.words.get(bound.name, [""] * len(keys))
+            words = self._words(bound, len(keys))
             labels = dict(item.labels) if isinstance(item, (Choice, Carry)) else {}
             return plain | {"texts": words, "si": [None] * len(keys), "labels": labels}
         return plain | self._numbers(bound, schedule, len(keys))
+
+    def _words(self, bound: Bound, count: int) -> list[str]:
+        found = self.results.values.get(bound.name) if bound.is_words else None
+        if found is not None:
+            return texts(found)
+        return self.readings.words.get(bound.name, [""] * count)
 
     def _holding(self, bound: Bound, count: int) -> list[bool]:
         """Return which cases of a column's line hold in some row; none where it has no values."""

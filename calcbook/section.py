@@ -6,7 +6,18 @@ from typing import TYPE_CHECKING, Self, Unpack
 
 from calcbook.declarations import Common, Declarations, common_parts, labelled, measure
 from calcbook.errors import DeclarationError
-from calcbook.items import Carry, Check, Figure, Handle, Item, Remark, Schedule, TableItem, Tone
+from calcbook.items import (
+    Carry,
+    Check,
+    Figure,
+    Handle,
+    Item,
+    Remark,
+    Schedule,
+    Solver,
+    TableItem,
+    Tone,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterable, Mapping, Sequence
@@ -237,6 +248,33 @@ class Section(Declarations):
         )
         self._add(item)
         return Rows(self, item)
+
+    def solver(
+        self,
+        name: str,
+        meaning: str,
+        *,
+        by: str,
+        takes: Mapping[str, str | Mapping[str, str]],
+        **common: Unpack[Common],
+    ) -> Handle:
+        """Put a solver of the package to work on declared names; ``solved`` reads what it found.
+
+        Parameters
+        ----------
+        by
+            The solver: 'beam', 'truss'; see ``calcbook.solvers.names()``.
+        takes
+            The name that fills each of its roles; a role filled by load case takes a mapping
+            from case to name.
+        """
+        return self._guarded(
+            lambda: Solver(
+                name=name, meaning=meaning, by=by, takes=dict(takes), **common_parts(common)
+            ),
+            name,
+            by,
+        )
 
     def check(self, formula: str, meaning: str, **common: Unpack[Common]) -> None:
         """Declare a requirement ``demand <= limit``."""

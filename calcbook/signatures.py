@@ -27,7 +27,7 @@ class Type:
     Attributes
     ----------
     form
-        'number', 'text' (an option of a choice), 'truth' or 'table'.
+        'number', 'text' (an option of a choice), 'truth', 'table' or 'solution' (of a solver).
     dimension
         Of a number, else None.
     rows
@@ -49,7 +49,12 @@ def kind_of(found: Type) -> str:
     """Return the words for a type: 'pressure', 'choice', 'condition', 'table'."""
     if found.form == "number":
         return dimension_name(found.dimension or DIMENSIONLESS)
-    return {"text": "choice", "truth": "condition", "table": "table"}[found.form]
+    return {
+        "text": "choice",
+        "truth": "condition",
+        "table": "table",
+        "solution": "solution of a solver",
+    }[found.form]
 
 
 def a_kind(found: Type) -> str:
@@ -108,6 +113,7 @@ class Rules(ABC):
             "text": f"compare it with one of its options: {self.example(node, found)}",
             "truth": "use where(condition, a, b)",
             "table": "read it with interpolate(table, x)",
+            "solution": "declare a line that reads it: s.solved(...)",
         }[found.form]
         return self.refuse(f"{use} needs a number, and this is {a_kind(found)}", hint, node)
 

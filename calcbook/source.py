@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 
 from calcbook.compile import python_source
 from calcbook.formula import parse
-from calcbook.items import Check, Line
+from calcbook.items import Check, Line, Solver
 from calcbook.tree import Compare, Name, Quoted, names
 
 if TYPE_CHECKING:
@@ -54,7 +54,9 @@ class Source:
         self.body: list[str] = []
         self._total = ["total"]
         for item in bound:
-            if isinstance(item.item, Line):
+            if isinstance(item.item, Solver):
+                self._solver(item)
+            elif isinstance(item.item, Line):
                 self._line(item)
             elif not array:
                 self._other(item)
@@ -133,12 +135,17 @@ class Source:
         name = f"v_{bound.name}"
         if self.array:
             value = self.selected(bound)
+            if bound.is_words:
+                self.body.append(f"{name} = {value}")
+                return
             text = _picked(guard, value, NAN) if guard else value
             if bound.schedule is not None:
                 text = f"_column({text}, z_{bound.schedule.rows})"
             self.body.append(f"{name} = {text}")
             return
-        if bound.schedule is not None:
+        if bound.is_words:
+            lines, total = [f"{name} = {self._column(bound)}"], "0.0"
+        elif bound.schedule is not None:
             lines, total = [f"{name} = {self._column(bound)}"], f"float({name}.sum())"
         else:
             lines, total = self._branching(bound), name
@@ -149,7 +156,17 @@ class Source:
             self.body += lines
             self._total.append(total)
 
+    def _solver(self, bound: Bound) -> None:
+        """Write a solver at work; with many cases its conditions count in what is read of it."""
+        line = f"v_{bound.name} = {self.branch(bound, 0)}"
+        if bound.guards and not self.array:
+            self._under(self._guard(bound.guards), [line], [f"v_{bound.name} = None"])
+        else:
+            self.body.append(line)
+
     def _column(self, bound: Bound) -> str:
+        if bound.is_words:
+            return self.selected(bound)
         return f"{self.selected(bound)} + z_{bound.schedule.rows if bound.schedule else ''}"
 
     def _branching(self, bound: Bound) -> list[str]:

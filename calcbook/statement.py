@@ -11,7 +11,7 @@ from functools import cache
 from importlib import resources
 from typing import TYPE_CHECKING, Any
 
-from calcbook import figures, units
+from calcbook import figures, solvers, solving, units
 from calcbook.errors import CalcbookError
 from calcbook.fingerprint import fingerprint
 from calcbook.items import (
@@ -25,6 +25,8 @@ from calcbook.items import (
     Line,
     Remark,
     Schedule,
+    Solved,
+    Solver,
     TableItem,
     Text,
 )
@@ -57,6 +59,8 @@ KINDS: dict[type[Item], str] = {
     Choice: "choice",
     Carry: "carried",
     Line: "line",
+    Solved: "line",
+    Solver: "solver",
     TableItem: "table",
     Schedule: "schedule",
     Check: "check",
@@ -174,6 +178,8 @@ class Writer:
                 return self.schedules.write(bound, item, applies=applies)
             case Check() as item:
                 return self._check(bound, item)
+            case Solver() as item:
+                return self._solver(bound, item, usable=usable)
             case item:
                 return _stated(item)
 
@@ -243,6 +249,16 @@ class Writer:
             "ratio_text": "" if used is None else ratio_text(used, relation, held),
             "satisfied": held,
         }
+
+    def _solver(self, bound: Bound, item: Solver, *, usable: bool) -> Plain:
+        found = self.results.values.get(bound.name) if usable else None
+        solver = solvers.find(item.by)
+        takes = [
+            {"role": role, "meaning": solver.roles[role].meaning, "case": case, "name": name}
+            for role, case, name in solving.filled(item)
+        ]
+        says: list[str] = list(found.says()) if isinstance(found, solvers.Solution) else []
+        return {"by": item.by, "method": solver.method, "takes": takes, "says": says}
 
     def _sides(self, bound: Bound, demand: object, limit: object) -> tuple[Plain, Plain]:
         blank: Plain = {"si": None, "value": None, "unit": "", "text": ""}

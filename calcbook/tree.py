@@ -112,7 +112,25 @@ class Not(_Part):
     operand: Node
 
 
-Node = Number | Quoted | Name | Negative | Binary | Call | Compare | Logic | Not
+@dataclass(frozen=True, slots=True)
+class Solve(_Part):
+    """A solver at work: (role, load case or '', symbol) for all that it takes; no formula text."""
+
+    solver: str
+    takes: tuple[tuple[str, str, Name], ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Found(_Part):
+    """An outcome of a solver; ``rows`` is the set of rows it runs over, None for one value."""
+
+    solution: Name
+    outcome: str
+    case: str
+    rows: str | None
+
+
+Node = Number | Quoted | Name | Negative | Binary | Call | Compare | Logic | Not | Solve | Found
 
 
 def names(node: Node) -> tuple[str, ...]:
@@ -127,7 +145,7 @@ def walk(node: Node) -> Iterator[Node]:
         yield from walk(child)
 
 
-def children(node: Node) -> tuple[Node, ...]:
+def children(node: Node) -> tuple[Node, ...]:  # noqa: PLR0911  one case per kind of node
     """Return the parts directly below a node, in the order of the text."""
     match node:
         case Binary(left=left, right=right):
@@ -138,6 +156,10 @@ def children(node: Node) -> tuple[Node, ...]:
             return parts
         case Compare(first=first, rest=rest):
             return (first, *(part for _, part in rest))
+        case Solve(takes=takes):
+            return tuple(part for _, _, part in takes)
+        case Found(solution=solution):
+            return (solution,)
         case _:
             return ()
 
@@ -148,6 +170,8 @@ KEYED = frozenset({"lookup", "sum_for"})
 
 def gathers(node: Node) -> bool:
     """Whether a call works on whole columns: its value in one row depends on other rows."""
+    if isinstance(node, Solve):
+        return True
     if not isinstance(node, Call):
         return False
     if node.function in {"min", "max"}:

@@ -365,13 +365,17 @@ def equation(
     """Return the parts of a line, to be joined by '=': symbol, formula, with values, result.
 
     A part that would say the same as the one before it is left out, and so are the values where
-    the formula has no names, and the result where there is none.
+    the formula has no names, and the result where there is none. A line that a solver found has
+    no formula.
 
     Parameters
     ----------
     printed_form
         Whether the formula is kept as printed: values stand in it without their units.
     """
+    if not formula_text:
+        found = [number(result.text, result.unit, output)] if result is not None else []
+        return [symbol(name, output), *found]
     node = parse(formula_text)
     used = names(node)
     parts = [symbol(name, output), expression(node, output)]
@@ -387,6 +391,9 @@ def spoken(
     name: str, formula_text: str, values: Mapping[str, Printed], result: Printed | None
 ) -> str:
     """Return a line as one spoken sentence, for readers who hear the page."""
+    if not formula_text:
+        found = f" equals {_Spoken().value(result.text, result.unit).text}" if result else ""
+        return f"{name}{found}."
     node = parse(formula_text)
     sentence = f"{name} equals {_Spoken().write(node).text}"
     if values.keys() & substituted(node):

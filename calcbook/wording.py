@@ -34,6 +34,20 @@ def amount(value: Mapping[str, Any] | None) -> str:
     return typeset.number(value["text"], value.get("unit", ""), "plain")
 
 
+def solved_words(item: Mapping[str, Any]) -> str:
+    """Return which outcome of which solver a line or column is; '' for a formula."""
+    found = item.get("solved")
+    return f"{found['words']}, found by {found['number']}" if found else ""
+
+
+def solver_takes(item: Mapping[str, Any]) -> list[tuple[str, list[tuple[str, str]]]]:
+    """Return what a solver takes: (what it is, its (load case or '', name) pairs) by role."""
+    roles: dict[str, list[tuple[str, str]]] = {}
+    for taken in item["takes"]:
+        roles.setdefault(taken["meaning"], []).append((taken["case"], taken["name"]))
+    return list(roles.items())
+
+
 AT_LEAST = {">=": "at least", ">": "more than", "==": "to be", "!=": "not to be"}
 
 

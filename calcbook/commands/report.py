@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from calcbook.commands import review
 from calcbook.standing import is_unconfirmed, unconfirmed_rows
 from calcbook.typeset import Printed, equation, number
-from calcbook.wording import amount, verdict
+from calcbook.wording import amount, solved_words, solver_takes, verdict
 
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping, Sequence
@@ -39,7 +39,7 @@ def text_report(statement: Mapping[str, object]) -> str:
 def _item(item: Item) -> list[str]:
     writers = {
         "line": _line, "schedule": _schedule, "check": _check, "remark": _remark,
-        "table": _table, "error": _error,
+        "table": _table, "error": _error, "solver": _solver,
     }  # fmt: skip
     if item["kind"] == "figure":
         return []
@@ -89,7 +89,8 @@ def _line(item: Item) -> list[str]:
     clause = f"  ({item['clause']})" if item["clause"] else ""
     head = _wrapped(f"{_head(item)}{clause}")
     if item["problem"]:
-        return [*head, f"{MARGIN}{item['name']} = {item['formula']}", *_problem(item)]
+        formula = item["formula"] or solved_words(item)
+        return [*head, f"{MARGIN}{item['name']} = {formula}", *_problem(item)]
     values: Mapping[str, Mapping[str, str]] = item["values"]
     value: Mapping[str, str] = item["value"]
     parts = equation(
@@ -99,7 +100,18 @@ def _line(item: Item) -> list[str]:
         printed_form=bool(item["takes"]),
     )  # fmt: skip
     why = [f"{MARGIN}because {item['why']}"] if item["why"] else []
-    return head + _at_equals(parts) + why
+    found = _wrapped(f"{MARGIN}({solved_words(item)})") if item["solved"] else []
+    return head + _at_equals(parts) + why + found
+
+
+def _solver(item: Item) -> list[str]:
+    lines = [*_wrapped(_head(item)), *_wrapped(f"{MARGIN}{item['method']}")]
+    for meaning, names in solver_takes(item):
+        told = ", ".join(f"{case} {name}".strip() for case, name in names)
+        lines += _wrapped(f"{MARGIN}{meaning}: {told}")
+    for text in item["says"]:
+        lines += _wrapped(f"{MARGIN}{text}")
+    return lines + _problem(item)
 
 
 def _at_equals(parts: Sequence[str]) -> list[str]:
@@ -195,6 +207,7 @@ def _grid(columns: Sequence[tuple[bool, list[str]]]) -> Iterator[str]:
 def _formula(column: Mapping[str, object]) -> list[str]:
     formulas = [column["formula"]] if column["formula"] else []
     cases: Sequence[Mapping[str, object]] = column["cases"]  # type: ignore[assignment]
+    formulas += [solved_words(column)] if column["solved"] else []
     formulas += [f"{c['formula']}  when {c['when'] or 'none of these'}" for c in cases]
     return [
         line for text in formulas

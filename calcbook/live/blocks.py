@@ -20,6 +20,8 @@ from calcbook.wording import (
     governs,
     not_applied,
     option_words,
+    solved_words,
+    solver_takes,
     symbols_in,
     verdict,
 )
@@ -226,11 +228,26 @@ def _line(item: Plain, *, within: bool = False) -> Block:
         common["notes"] += ((f"as printed: {', '.join(spoken)}",),)
     if item.get("sign"):
         common["notes"] += ((f"positive {item['sign']}",),)
+    if item.get("solved"):
+        common["notes"] += ((solved_words(item),),)
     values = {n: typeset.Printed(v["text"], v["unit"]) for n, v in item["values"].items()}
     equation = Equation(
         item["name"], item["formula"], values, _printed(item["value"]), bool(item["takes"])
     )
     return Block(**common, says=says, equation=equation, within=within)
+
+
+def _solver(item: Plain) -> Block:
+    takes = tuple(
+        (f"{meaning}: ", *(run for place, one in enumerate(names) for run in _taken(place, *one)))
+        for meaning, names in solver_takes(item)
+    )
+    says = tuple((text,) for text in item["says"])
+    return Block(**_common(item), says=((item["method"],), *takes, *says))
+
+
+def _taken(place: int, case: str, name: str) -> Words:
+    return (", " if place else "", f"{case} " if case else "", Symbol(name))
 
 
 def _check(item: Plain) -> Block:
@@ -356,6 +373,8 @@ def _definitions(column: Plain, worked: set[tuple[str, str]]) -> Iterator[Words]
     name = column["name"]
     words: Words = (Symbol(name), ": ", *phrase(column["meaning"] or name))
     clause: Words = (f" ({column['clause']})",) if column["clause"] else ()
+    if column.get("solved"):
+        clause = (", ", solved_words(column), *clause)
     cases = cases_told(column)
     formulas = [text for text, _ in cases] or [column["formula"]]
     if not formulas[0] or all((name, text) in worked for text in formulas):
@@ -374,6 +393,7 @@ def _definitions(column: Plain, worked: set[tuple[str, str]]) -> Iterator[Words]
 
 _SHAPES: dict[str, Callable[[Plain], Block]] = {
     "entry": _entry, "text": _text, "choice": _choice, "carried": _carried, "line": _line,
+    "solver": _solver,
     "table": _table, "schedule": _schedule, "check": _check, "remark": _remark,
     "figure": _figure, "error": _error,
 }  # fmt: skip

@@ -10,7 +10,16 @@ from calcbook.errors import PackError
 from calcbook.pack import nodes, schedules
 from calcbook.pack.nodes import Node, joined, link, page, phrase, strong, symbol, typed, words
 from calcbook.standing import is_unconfirmed
-from calcbook.wording import FROM_MEMORY, OUTSIDE, amount, compared, governs, option_words
+from calcbook.wording import (
+    FROM_MEMORY,
+    OUTSIDE,
+    amount,
+    compared,
+    governs,
+    option_words,
+    solved_words,
+    solver_takes,
+)
 from calcbook.wording import verdict as judged
 
 if TYPE_CHECKING:
@@ -56,6 +65,7 @@ class Writer:
             "choice": self._choice,
             "carried": self._carried,
             "line": self._line,
+            "solver": self._solver,
             "table": self._table,
             "schedule": self._schedule,
             "check": self._check,
@@ -125,6 +135,8 @@ class Writer:
         notes: list[list[Node]] = []
         if item.get("takes"):
             notes.append(_printed_units(item))
+        if item.get("solved"):
+            notes.append([solved_words(item)])
         if item.get("result"):
             notes.append(["result" + (f", positive: {item['sign']}" if item.get("sign") else "")])
         return {
@@ -133,6 +145,14 @@ class Writer:
             "lines": [["applies because ", *phrase(item["why"])]] if item.get("why") else [],
             "notes": notes,
         }
+
+    def _solver(self, item: Item) -> dict[str, Any]:
+        lines: list[list[Node]] = [[words(item["method"])]]
+        for meaning, names in solver_takes(item):
+            named = [[f"{case} " if case else "", symbol(name)] for case, name in names]
+            lines.append([f"{meaning}: ", *joined(named, ", ")])
+        lines += [[words(text)] for text in item["says"]]
+        return {"t": "words", "words": phrase(item["meaning"]), "lines": lines}
 
     def _check(self, item: Item) -> dict[str, Any]:
         tree = formula.parse(item["text"])

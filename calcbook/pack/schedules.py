@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 from calcbook import formula, typeset, units
 from calcbook.pack import nodes
 from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, words
-from calcbook.wording import amount, cases_told
+from calcbook.wording import amount, cases_told, solved_words
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -71,6 +71,10 @@ def legend(item: Item) -> list[list[Node]]:
         formulas = {case["formula"] for case in column.get("cases") or ()} or {column["formula"]}
         if not column.get("applies", True):
             told.append([symbol(column["name"]), " ", *meaning, ": not applied"])
+        elif column.get("solved"):
+            told.append(
+                [symbol(column["name"]), " ", *meaning, f", {solved_words(column)}{clause}"]
+            )
         elif column["role"] == "computed" and {(column["name"], f) for f in formulas} - worked:
             lines += [joined(told, "; "), *_definitions(column, [*meaning, clause])]
             told = []

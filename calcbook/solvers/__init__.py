@@ -1,0 +1,236 @@
+"""What a workbook may ask of the statics: solvers by name, what they take and what they give.
+
+A solver takes columns and values in coherent SI under *roles* ('supports', 'loads'), and gives a
+solution that answers to *outcomes* ('reaction', 'largest moment'). ``solve`` and ``outcome`` are
+what a compiled workbook calls.
+"""
+
+from __future__ import annotations
+
+import importlib
+from collections import OrderedDict
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING, Any, Protocol, runtime_checkable
+
+import numpy as np
+
+from calcbook.errors import DeclarationError, StaticsError, near_match
+
+if TYPE_CHECKING:
+    from collections.abc import Callable, Mapping
+
+__all__ = ["Outcome", "Role", "Solution", "Solver", "find", "names", "outcome", "solve"]
+
+#: Where each solver is described; imported when a workbook first asks for it.
+_MODULES = {"combinations": "calcbook.solvers.combinations"}
+_KEPT = 64
+
+
+@dataclass(frozen=True)
+class Role:
+    """One thing a solver takes.
+
+    Attributes
+    ----------
+    meaning
+        What it is, in the words printed.
+    kind
+        A kind of quantity ('length'), 'text', or 'any': one kind of quantity for all such roles.
+    rows
+        The set of rows it runs over, as the solver calls it; '' for a single value.
+    by_case
+        It is given once for each load case: a mapping from case to name.
+    optional
+        A solver does without it.
+    """
+
+    meaning: str
+    kind: str
+    rows: str = ""
+    by_case: bool = False
+    optional: bool = False
+
+
+@dataclass(frozen=True)
+class Outcome:
+    """One thing a solution gives.
+
+    Attributes
+    ----------
+    meaning
+        What it is, in the words printed.
+    kind
+        A kind of quantity, 'text', or 'any': the kind of the roles that are 'any'.
+    rows
+        The set of rows it runs over, '' for a single value.
+    by_case
+        It is asked for a load case.
+    """
+
+    meaning: str
+    kind: str
+    rows: str = ""
+    by_case: bool = False
+
+
+@runtime_checkable
+class Solution(Protocol):
+    """What a solver found for one set of values."""
+
+    def give(self, outcome: str, case: str) -> object:
+        """Return an outcome: a float, or an array or list over the rows it runs over."""
+        ...
+
+    def says(self) -> tuple[str, ...]:
+        """Return what a reviewer should know: residual, determinacy, members without force."""
+        ...
+
+
+@dataclass(frozen=True)
+class Solver:
+    """A solver of the package, as workbooks see it.
+
+    Attributes
+    ----------
+    method
+        The method and its source, as printed.
+    roles, outcomes
+        What it takes and gives, by name.
+    run
+        Takes values by role (floats, arrays over rows, lists of texts; mappings by case) and
+        returns the solution. Raises StaticsError for what cannot be solved.
+    """
+
+    name: str
+    method: str
+    roles: Mapping[str, Role]
+    outcomes: Mapping[str, Outcome]
+    run: Callable[[Mapping[str, Any]], Solution]
+    _kept: OrderedDict[object, Solution | StaticsError] = field(
+        default_factory=OrderedDict, compare=False
+    )
+
+    def solution(self, given: Mapping[str, Any]) -> Solution:
+        """Solve, or return what was found for the same values before.
+
+        Raises StaticsError for what cannot be solved, and for whatever else goes wrong inside.
+        """
+        key = tuple((role, _key(value)) for role, value in given.items())
+        if key not in self._kept:
+            try:
+                self._kept[key] = self.run(given)
+            except StaticsError as error:
+                self._kept[key] = error
+            except Exception as error:
+                what = f"the solver {self.name} stopped: {type(error).__name__}: {error}"
+                raise StaticsError(what, hint="the rest of the workbook stands") from error
+            while len(self._kept) > _KEPT:
+                self._kept.popitem(last=False)
+        found = self._kept[key]
+        if isinstance(found, StaticsError):
+            raise found
+        return found
+
+
+def names() -> tuple[str, ...]:
+    """Return the names of all solvers."""
+    return tuple(sorted(_MODULES))
+
+
+def find(name: str) -> Solver:
+    """Return the solver of a name; DeclarationError with a near match when there is none."""
+    if name not in _MODULES:
+        hint = near_match(name, _MODULES) or f"there are {', '.join(names())}"
+        raise DeclarationError(f"there is no solver '{name}'", hint=hint)
+    solver: Solver = importlib.import_module(_MODULES[name]).SOLVER
+    return solver
+
+
+def solve(name: str, given: Mapping[str, Any], *, array: bool) -> object:
+    """Run a solver on the values of a workbook, once, or for each of many cases.
+
+    Parameters
+    ----------
+    given
+        By role: a float, a column (rows,), texts; with ``array`` a float for all cases or one for
+        each (cases,), a column (rows, cases or 1); mappings of these by load case.
+
+    Returns
+    -------
+    A solution; with ``array`` a list of them by case, None where that case cannot be solved.
+
+    Raises
+    ------
+    StaticsError
+        Without ``array``, for what cannot be solved.
+    """
+    solver = find(name)
+    texts = {role for role, told in solver.roles.items() if told.kind == "text"}
+    columns = {role for role, told in solver.roles.items() if told.rows}
+    if not array:
+        return solver.solution({r: _plain(v, words=r in texts) for r, v in given.items()})
+    count = max((_cases(v, column=r in columns) for r, v in given.items()), default=1)
+    return [_one_of_many(solver, given, texts, columns, case) for case in range(count)]
+
+
+def _one_of_many(
+    solver: Solver, given: Mapping[str, Any], texts: set[str], columns: set[str], case: int
+) -> Solution | None:
+    picked = {
+        r: _plain(_at(v, case, column=r in columns), words=r in texts) for r, v in given.items()
+    }
+    try:
+        return solver.solution(picked)
+    except StaticsError:
+        return None
+
+
+def outcome(solution: object, name: str, case: str, rows: int | None) -> Any:  # noqa: ANN401
+    """Return an outcome of what ``solve`` returned; ``rows`` is the length of a column.
+
+    For many cases a value becomes an array (cases,), a column (rows, cases), with nan where a
+    case could not be solved.
+    """
+    if not isinstance(solution, list):
+        found = solution.give(name, case)  # type: ignore[attr-defined]
+        return float(found) if rows is None and not isinstance(found, str) else np.asarray(found)
+    blank: Any = np.nan if rows is None else np.full(rows, np.nan)
+    every = [blank if one is None else np.asarray(one.give(name, case)) for one in solution]
+    return np.stack(np.broadcast_arrays(*every), axis=-1)
+
+
+def _key(value: object) -> object:
+    if isinstance(value, dict):
+        return tuple((case, _key(one)) for case, one in value.items())
+    if isinstance(value, np.ndarray):
+        return value.shape, value.tobytes()
+    return tuple(value) if isinstance(value, list) else value
+
+
+def _plain(value: object, *, words: bool) -> object:
+    """Return a value as a solver takes it: a float, an array of floats or a list of texts."""
+    if isinstance(value, dict):
+        return {case: _plain(one, words=words) for case, one in value.items()}
+    if words:
+        single = isinstance(value, str) or np.ndim(value) == 0  # type: ignore[arg-type]
+        return str(value) if single else [str(v) for v in np.ravel(np.asarray(value, object))]
+    if value is None:
+        raise StaticsError("a value that the solver takes does not apply")
+    found = np.asarray(value, dtype=float)
+    return float(found) if found.ndim == 0 else found
+
+
+def _cases(value: object, *, column: bool) -> int:
+    if isinstance(value, dict):
+        return max((_cases(v, column=column) for v in value.values()), default=1)
+    found = np.asarray(value)
+    return found.shape[-1] if found.ndim == (2 if column else 1) else 1
+
+
+def _at(value: object, case: int, *, column: bool) -> object:
+    if isinstance(value, dict):
+        return {name: _at(v, case, column=column) for name, v in value.items()}
+    found = np.asarray(value)
+    if found.ndim < (2 if column else 1):
+        return value
+    return found[..., min(case, found.shape[-1] - 1)]
