@@ -5,6 +5,7 @@
 from __future__ import annotations
 
 from html import escape
+from functools import lru_cache
 from typing import TYPE_CHECKING, ClassVar
 
 from calcbook.formula import names, parse
@@ -320,6 +321,7 @@ _PRINTERS: dict[str, type[Printer]] = {
 OUTPUTS = tuple(_PRINTERS)
 
 
+@lru_cache(maxsize=4096)
 def symbol(name: str, output: str) -> str:
     """Return the symbol of a name: single letters italic, words upright, Greek where it is one."""
     return _PRINTERS[output]().symbol(name)
@@ -328,6 +330,17 @@ def symbol(name: str, output: str) -> str:
 def number(text: str, unit: str, output: str) -> str:
     """Return a formatted number (ASCII '-', e for powers of ten) with its unit, or an option."""
     return _PRINTERS[output]().value(text, unit).text
+
+
+@lru_cache(maxsize=4096)
+def _in_symbols(formula_text: str, output: str) -> str:
+    """Return a formula in symbols; while its values change it stays the same."""
+    return expression(parse(formula_text), output)
+
+
+@lru_cache(maxsize=4096)
+def _said_in_symbols(formula_text: str) -> str:
+    return _Spoken().write(parse(formula_text)).text
 
 
 def expression(
@@ -378,7 +391,7 @@ def equation(
         return [symbol(name, output), *found]
     node = parse(formula_text)
     used = names(node)
-    parts = [symbol(name, output), expression(node, output)]
+    parts = [symbol(name, output), _in_symbols(formula_text, output)]
     if values.keys() & substituted(node):
         takes = frozenset(used) if printed_form else frozenset()
         parts.append(expression(node, output, values, takes=takes))
@@ -395,7 +408,7 @@ def spoken(
         found = f" equals {_Spoken().value(result.text, result.unit).text}" if result else ""
         return f"{name}{found}."
     node = parse(formula_text)
-    sentence = f"{name} equals {_Spoken().write(node).text}"
+    sentence = f"{name} equals {_said_in_symbols(formula_text)}"
     if values.keys() & substituted(node):
         sentence += f", which is {_Spoken(values).write(node).text}"
     if result is not None:
