@@ -7,7 +7,7 @@ from dataclasses import dataclass, field, replace
 from functools import lru_cache
 from typing import TYPE_CHECKING
 
-from calcbook import figures, solving, units
+from calcbook import figures, shaping, solving, units
 from calcbook.dimensions import Type, check, check_printed
 from calcbook.errors import CalcbookError, DeclarationError, FormulaError, near_match
 from calcbook.formula import parse
@@ -27,7 +27,7 @@ from calcbook.items import (
     Text,
 )
 from calcbook.spelling import check_name
-from calcbook.tree import Compare, Name, Node, names, walk
+from calcbook.tree import Compare, Logic, Name, Node, names, walk
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterable, Mapping, Sequence
@@ -243,8 +243,21 @@ class Binder:
         self._declare(bound, Type("number", found.dimension, rows))
 
     def _bind_solver(self, bound: Bound, item: Solver) -> None:
-        bound.branches = ((None, solving.bind(item, self.scope, self._look_up(bound))),)
+        node = solving.bind(item, self.scope, self._look_up(bound))
+        node = replace(node, conditions=self._conditions(solving.may_idle(item), bound))
+        bound.branches = ((None, node),)
+        bound.needs = tuple(dict.fromkeys((*bound.needs, *names(node))))
         self._declare(bound, Type("solution", None, None))
+
+    def _conditions(self, taken: Iterable[str], bound: Bound) -> tuple[tuple[str, Node], ...]:
+        """Return the conditions of names that a solver does without where they do not apply."""
+        own = set(bound.guards)
+        found = []
+        for name in taken:
+            tests = [self.guards[g] for g in self.home[name].guards if g not in own]
+            if tests:
+                found.append((name, tests[0] if len(tests) == 1 else Logic("and", tuple(tests))))
+        return tuple(found)
 
     def _bind_solved(self, bound: Bound, item: Solved) -> None:
         self._look_up(bound)(item.of)
@@ -347,6 +360,9 @@ class Binder:
             bound.columns.append(part)
             if part.type is not None and part.name in self.scope:
                 self._declare(part, replace(part.type, rows=bound.rows))
+        if item.shaped is not None:
+            above = {name: home.item for name, home in self.home.items() if home.schedule is None}
+            shaping.check(item, item.shaped, self.scope, above)
         self._note_missing(item, bound)
 
     def _row_set(self, item: Schedule) -> str:

@@ -14,13 +14,13 @@ import numpy as np
 
 from calcbook import units
 from calcbook.errors import CalcbookError, InputError
-from calcbook.items import Carry, Check, Choice, Entry, Text
+from calcbook.items import Carry, Check, Choice, Entry, Schedule, Text
 from calcbook.reading import SLACK, read_value
 from calcbook.verdict import STRICT, margin
 from calcbook.workbook import first_problem
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping, Sequence
+    from collections.abc import Iterable, Mapping, Sequence
 
     from calcbook.bind import Bound
     from calcbook.items import Item
@@ -84,6 +84,7 @@ def read(book: Workbook, columns: Mapping[str, Sequence[str]]) -> Cases:
     if len(counts) != 1:
         raise InputError("the columns of the cases are not of one length")
     known = entries(book)
+    _refuse_shaping(book, columns)
     program_values: dict[str, Value] = {}
     for name, value in book.readings.values.items():
         program_values[name] = _fixed(value)
@@ -208,6 +209,21 @@ def failing(
 # --- reading ------------------------------------------------------------------------------------
 
 
+def _refuse_shaping(book: Workbook, names: Iterable[str]) -> None:
+    """Refuse an entry that rows depend on: every case has the same rows."""
+    for item in (b.item for b in book.bound):
+        shaped = item.shaped if isinstance(item, Schedule) else None
+        if shaped is None:
+            continue
+        here = item.name in book.readings.shaped
+        found = [shaped.choice, *(shaped.takes.values() if here else ())]
+        for name in (n for n in names if n in found):
+            raise InputError(
+                f"the rows of {item.name} depend on {name}, and every case has the same rows",
+                hint=f"use --set {name}=VALUE", where=book.name,
+            )  # fmt: skip
+
+
 def _fixed(value: Value) -> Value:
     """Return a value that is the same in every case, ready to be computed with arrays."""
     if isinstance(value, np.ndarray):
@@ -223,7 +239,7 @@ def _refuse_missing(book: Workbook, columns: Mapping[str, Sequence[str]]) -> dic
         if not reason or name in columns:
             continue
         bound = book.scope[name]
-        if bound.schedule is not None or book.results.applies.get(bound.number, True):
+        if book.results.applies.get(bound.number, True):
             raise InputError(_reason(name, reason), where=book.name)
         idle[name] = reason
     return idle

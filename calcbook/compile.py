@@ -15,7 +15,7 @@ from typing import TYPE_CHECKING, NamedTuple
 import numpy as np
 
 from calcbook.keyed import lookup, lookup_rows, sum_for, sum_for_rows
-from calcbook.solvers import outcome, solve
+from calcbook.solvers import acting, outcome, solve
 from calcbook.tree import (
     KEYED,
     Binary,
@@ -126,15 +126,18 @@ class _Writer:
             case Solve(solver=solver):
                 return _Source(f"f_solve({solver!r}, {self.given(node)})", _ATOM, column=False)
             case Found(solution=solution, outcome=wanted, case=case, rows=rows):
-                length = f"len(z_{rows})" if rows is not None else "None"
+                length = "None" if rows is None else f"len(z_{rows})" if self.array else "0"
                 text = f"f_outcome({self.name(solution.name).text}, {wanted!r}, {case!r}, {length})"
                 return _Source(text, _ATOM, column=rows is not None)
 
     def given(self, node: Solve) -> str:
         """Return what a solver takes as the source of a dictionary, those of a role by case."""
         roles: dict[str, list[str]] = {}
+        conditions = dict(node.conditions)
         for role, case, name in node.takes:
             value = self.name(name.name).text
+            if name.name in conditions:
+                value = f"f_acting({self.write(conditions[name.name]).text}, {value})"
             roles.setdefault(role, []).append(f"{case!r}: {value}" if case else value)
         by_case = {role for role, case, _ in node.takes if case}
         parts = (
@@ -268,7 +271,7 @@ def namespace(array: bool) -> dict[str, object]:
     by_key = {
         "f_lookup": lookup, "f_lookup_rows": lookup_rows,
         "f_sum_for": sum_for, "f_sum_for_rows": sum_for_rows,
-        "f_solve": partial(solve, array=array), "f_outcome": outcome,
+        "f_solve": partial(solve, array=array), "f_outcome": outcome, "f_acting": acting,
     }  # fmt: skip
     wide = {f"f_{name}": function for name, function in _WIDE.items()}
     shared = {f"f_{name}": function for name, function in _SHARED.items()}

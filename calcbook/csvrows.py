@@ -18,7 +18,7 @@ from calcbook.quantities import comma_hint
 from calcbook.recordform import RowRecord
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping, Sequence
+    from collections.abc import Collection, Iterable, Mapping, Sequence
     from pathlib import Path
 
 _HEADER = re.compile(r"(?P<name>.*?\S)\s*(?:\((?P<round>[^()]*)\)|\[(?P<square>[^\[\]]*)\])")
@@ -94,7 +94,9 @@ def read_table(path: Path) -> CsvTable:
     return CsvTable(path.name, headers, found, tuple(lines))
 
 
-def as_rows(table: CsvTable, columns: Mapping[str, bool], where: str) -> list[RowRecord]:
+def as_rows(
+    table: CsvTable, columns: Mapping[str, bool], where: str, optional: Collection[str] = ()
+) -> list[RowRecord]:
     """Return the rows of a schedule; empty cells are left out.
 
     Parameters
@@ -105,6 +107,8 @@ def as_rows(table: CsvTable, columns: Mapping[str, bool], where: str) -> list[Ro
         The columns the engineer supplies, and whether each needs a unit.
     where
         The place named in errors, such as ``schedule levels``.
+    optional
+        The columns that may be left out of the file.
 
     Raises
     ------
@@ -115,19 +119,19 @@ def as_rows(table: CsvTable, columns: Mapping[str, bool], where: str) -> list[Ro
     with_source = _SOURCE in names and _SOURCE not in columns
     try:
         _check_known(table.name, (n for n in names if n != _SOURCE or not with_source), columns)
-        missing = [name for name in columns if name not in names]
+        missing = [name for name in columns if name not in names and name not in optional]
         if missing:
             hint = f"the columns are: the key, {', '.join(columns)}"
             raise _error(table.name, f"there is no column '{missing[0]}'", 1, "", hint)
         for name, needs_unit in columns.items():
-            if needs_unit:
+            if needs_unit and name in names:
                 _check_units(table.name, name, [row[name] for row in table.rows], table.lines)
     except InputError as error:
         raise error.at(where) from None
     return [
         RowRecord(
             row[table.headers[0].name],
-            {name: row[name] for name in columns if row[name]},
+            {name: row[name] for name in columns if row.get(name)},
             row[_SOURCE] if with_source else "",
         )
         for row in table.rows

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 import hashlib
 import json
 from typing import TYPE_CHECKING, Any
@@ -71,6 +72,8 @@ def _formulas(bound: Bound) -> list[object]:
         basis.append(item.formula)
     elif isinstance(item, Schedule):
         basis += [item.key, item.same_rows]
+        if item.shaped is not None:
+            basis.append(dataclasses.asdict(item.shaped))
     elif isinstance(item, TableItem) and item.table is not None:
         axes = [[a.name, a.unit.text, list(a.points)] for a in item.table.axes]
         basis += [axes, item.table.values, item.table.unit.text, item.table.outside]

@@ -10,9 +10,10 @@ import numpy as np
 
 from calcbook import units
 from calcbook.carried import Carried, carried_column, carried_value, refuse_cell
-from calcbook.errors import CalcbookError, InputError
+from calcbook.errors import CalcbookError, InputError, StaticsError
 from calcbook.items import Carry, Choice, Entry, Schedule, TableItem, Text
 from calcbook.reading import range_text, read_value
+from calcbook.solvers import shapes
 
 __all__ = [
     "Carried",
@@ -29,7 +30,7 @@ if TYPE_CHECKING:
     from collections.abc import Callable, Mapping, Sequence
 
     from calcbook.bind import Bound
-    from calcbook.items import Item
+    from calcbook.items import Item, Shaped
     from calcbook.program import Value
 
 
@@ -80,6 +81,7 @@ class Readings:
     cells: dict[str, list[units.Quantity | None]] = field(default_factory=dict)
     words: dict[str, list[str]] = field(default_factory=dict)
     fallbacks: set[str] = field(default_factory=set)
+    shaped: dict[str, shapes.ShapedRows] = field(default_factory=dict)
 
     @property
     def rows(self) -> dict[str, int]:
@@ -168,10 +170,12 @@ class Reader:
             self.found.problems[item.name] = f"two rows are called '{twice[0]}'"
         elif not all(key.strip() for key in keys):
             self.found.problems[item.name] = "a row has no key"
-        elif not rows:
+        elif not rows and not item.optional:
             self.found.problems.setdefault(item.name, "the schedule has no rows")
 
     def _given_rows(self, item: Schedule) -> list[GivenRow]:
+        if item.shaped is not None and self.found.values[item.shaped.choice] == item.shaped.option:
+            return self._shaped_rows(item, item.shaped)
         typed = self.inputs.rows.get(item.name) if not item.fixed else None
         brought = {c.name for c in item.columns if isinstance(c, Carry)}
         replaced = typed is not None and any(brought & set(row.cells) for row in typed)
@@ -185,6 +189,22 @@ class Reader:
             self.found.fallbacks.add(item.name)
         return [GivenRow(key, cells, item.source) for key, cells in item.default]
 
+    def _shaped_rows(self, item: Schedule, shaped: Shaped) -> list[GivenRow]:
+        """Return the rows of a shape, which nobody types; their values are kept apart."""
+        given = {what: self.found.values[name] for what, name in shaped.takes.items()}
+        lacking = next((shaped.takes[what] for what, value in given.items() if value is None), "")
+        self.found.shaped[item.name] = shapes.ShapedRows((), {})
+        if lacking:
+            self.found.problems[item.name] = f"not available because of {lacking}"
+            return []
+        try:
+            rows = shapes.find(shaped.by).run(given)
+        except StaticsError as error:
+            self.found.problems[item.name] = str(error)
+            return []
+        self.found.shaped[item.name] = rows
+        return [GivenRow(key, {}, confirmed="shaped") for key in rows.keys]
+
     def _joined(
         self, item: Schedule, carried: Carried, typed: Sequence[GivenRow] | None
     ) -> list[GivenRow]:
@@ -192,6 +212,8 @@ class Reader:
         source = carried.item
         if source is None or source.get("kind") != "schedule":
             self.found.problems[item.name] = carried.problem or f"{carried.origin} has no rows"
+            return []
+        if item.optional and not source["rows"]:
             return []
         if source.get("problem"):
             self.found.problems[item.name] = f"{carried.origin}: {source['problem']}"
@@ -223,11 +245,30 @@ class Reader:
             return
         rows = self.found.given_rows[schedule.rows]
         carried = self.found.carried.get(schedule.rows)
-        if isinstance(item, Carry) and carried is not None:
+        if self._is_shaped(bound):
+            self._shaped_column(bound)
+            return
+        if isinstance(item, Carry) and carried is not None and rows:
             self._carried_column(bound, item, carried, [row.key for row in rows])
         else:
             self._entered_column(bound, rows)
         self._refuse_disorder(bound, rows)
+
+    def _is_shaped(self, bound: Bound) -> bool:
+        """Whether a shape gives this column, in the rows it gave."""
+        schedule = bound.schedule.item if bound.schedule is not None else None
+        shaped = schedule.shaped if isinstance(schedule, Schedule) else None
+        here = shaped is not None and bound.name in shaped.gives
+        return here and schedule is not None and schedule.name in self.found.shaped
+
+    def _shaped_column(self, bound: Bound) -> None:
+        schedule: Schedule = bound.schedule.item  # type: ignore[union-attr, assignment]
+        column = self.found.shaped[schedule.name].columns[schedule.shaped.gives[bound.name]]  # type: ignore[union-attr]
+        if bound.type is not None and bound.type.form == "text":
+            self.found.words[bound.name] = [str(text) for text in column]
+            self.found.values[bound.name] = np.array(self.found.words[bound.name], dtype=object)
+        else:
+            self.found.values[bound.name] = np.array([float(value) for value in column])
 
     def _entered_column(self, bound: Bound, rows: Sequence[GivenRow]) -> None:
         cells: list[units.Quantity | str | None] = []

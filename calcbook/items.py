@@ -179,6 +179,29 @@ class Broken(Item):
     source: str = ""
 
 
+@dataclass(frozen=True)
+class Shaped:
+    """How the rows of a schedule come from a shape of the package.
+
+    Attributes
+    ----------
+    by
+        The shape; see ``calcbook.solvers.shapes``.
+    choice, option
+        The rows are the shape's while this choice stands at this option, and typed otherwise.
+    takes
+        The entry or choice for each thing the shape takes.
+    gives
+        What of the shape each column is.
+    """
+
+    by: str
+    choice: str
+    option: str
+    takes: Mapping[str, str]
+    gives: Mapping[str, str]
+
+
 @dataclass(eq=False)
 class Schedule(Item):
     """A table with keyed rows.
@@ -186,7 +209,8 @@ class Schedule(Item):
     ``columns`` are Entry, Text, Choice, Carry or Line items. ``default`` holds the template's
     rows as (key, {column: text}). ``origin`` brings the rows forward from another workbook,
     ``same_rows`` shares the rows of a schedule of this one, ``fixed`` rows belong to the method.
-    No two rows may have the same values in the columns of ``distinct`` together.
+    No two rows may have the same values in the columns of ``distinct`` together. ``optional``
+    schedules may have no rows at all. ``shaped`` rows come from a shape while a choice says so.
     """
 
     key: str = ""
@@ -202,6 +226,8 @@ class Schedule(Item):
     ascending: bool = False
     distinct: tuple[str, ...] = ()
     source: str = ""
+    optional: bool = False
+    shaped: Shaped | None = None
 
 
 class Handle:

@@ -42,6 +42,8 @@ def lookup(column: Array, keys: object, key: str | NDArray[np.str_]) -> float | 
 
 def _by_case(values: Array, rows: list[str], keys: NDArray[np.str_]) -> Array:
     """Return for each case the value of the row its key names, from (rows, 1) or (rows, cases)."""
+    if not rows:
+        return np.full(len(keys), math.nan)
     place = {key: row for row, key in reversed(list(enumerate(rows)))}
     wide = values.reshape(len(rows), -1)
     cases = max(len(keys), wide.shape[1])
@@ -55,6 +57,8 @@ def lookup_rows(column: Array, keys: object, wanted: object) -> Array:
     place = {key: row for row, key in reversed(list(enumerate(texts(keys))))}
     values = np.asarray(column, dtype=float)
     rows = np.array([place.get(key, -1) for key in texts(wanted)], dtype=int)
+    if not len(values):
+        return np.full((len(rows), *values.shape[1:]), math.nan)
     if np.array_equal(rows, np.arange(len(values))):
         return values  # the same rows in the same order
     found: Array = values[rows]

@@ -7,13 +7,27 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from calcbook import solvers
 from calcbook.compile import OutsideTableError
 from calcbook.errors import StaticsError
 from calcbook.formula import parse
 from calcbook.items import Check, Line, Solver
 from calcbook.keyed import MissingRowError, texts
 from calcbook.program import decide
-from calcbook.tree import KEYED, Call, Logic, Not, Quoted, accumulated, gathered, names, walk
+from calcbook.tree import (
+    KEYED,
+    Call,
+    Found,
+    Logic,
+    Name,
+    Not,
+    Quoted,
+    Solve,
+    accumulated,
+    gathered,
+    names,
+    walk,
+)
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -119,17 +133,48 @@ class LineByLine:
         if home is not None and home.name in self.bad:
             return f"not available because of {home.name}"
         for node in self._wanted(bound):
-            cause = self._first_bad(names(node))
+            cause = self._first_bad([n for n in names(node) if n not in self._idle(node)])
             if cause:
                 return f"not available because of {cause}"
             keyed = _keyed_names(node)
+            apart = self._row_by_row(node)
             for name in names(node) if home is None else gathered(node):
-                if name in keyed:
+                if name in keyed or name in apart:
                     continue  # only the row that is asked for counts
                 for reason in self.found.row_problems.get(name, ()):
                     if reason and not self._follows(bound, node, name):
                         return f"not available because of {name} ({reason})"
         return ""
+
+    def _idle(self, node: Node) -> frozenset[str]:
+        """Return the names that a solver does without, because their condition does not hold."""
+        conditions = node.conditions if isinstance(node, Solve) else ()
+        return frozenset(name for name, test in conditions if self._holds(test) is False)
+
+    def _row_by_row(self, node: Node) -> frozenset[str]:
+        """Return the columns of which a solver takes each row on its own, or does without."""
+        if not isinstance(node, Solve):
+            return frozenset()
+        solver = solvers.find(node.solver)
+        return self._idle(node) | {
+            name.name
+            for role, _, name in node.takes
+            if solver.roles[role].rows in solver.independent
+        }
+
+    def _behind(self, node: Node) -> list[str]:
+        """Return the columns whose rows stand behind those of a solver's outcome."""
+        if not isinstance(node, Found):
+            return []
+        step = next(s for s in self.program.steps() if s.bound.name == node.solution.name)
+        work = step.bound.branches[0][1]
+        if not isinstance(work, Solve):
+            return []
+        apart = self._row_by_row(work) - self._idle(work)
+        return [n.name for _, _, n in work.takes if n.name in apart and self._over(n) == node.rows]
+
+    def _over(self, name: Name) -> str | None:
+        return self.program.scope[name.name].rows
 
     def _follows(self, bound: Bound, node: Node, name: str) -> bool:
         """Whether a column takes another row by row, so that only some of its rows are missing."""
@@ -170,6 +215,8 @@ class LineByLine:
         """Put the value of a line into the results; returns why it is none, or ''."""
         if bound.is_words or isinstance(bound.item, Solver):
             self.found.values[bound.name] = value
+            if bound.is_words and bound.schedule is not None:
+                self._mark_rows(bound, np.zeros(self.rows[bound.schedule.rows]))
             return ""
         if bound.schedule is None:
             if not isinstance(value, float) or not math.isfinite(value):
@@ -205,6 +252,7 @@ class LineByLine:
             for n in names(node)
             if home is None or self.program.scope[n].rows == home.rows
         ]
+        own += [name for node in wanted for name in self._behind(node)]
         runs = frozenset[str]().union(*map(accumulated, wanted))
         for name in dict.fromkeys(own):
             bad = [bool(reason) for reason in self.found.row_problems.get(name, ())]

@@ -19,7 +19,7 @@ from calcbook.fingerprint import item_digest
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
 from calcbook.job import BASIS, Job
-from calcbook.marks import gathered
+from calcbook.marks import gathered, gathered_rows
 from calcbook.versions import software
 from calcbook.workbook import Workbook, first_problem
 
@@ -30,7 +30,7 @@ if TYPE_CHECKING:
     from calcbook.codes import CodeSet
     from calcbook.record import CarriedRecord, EntryRecord, Record, RowRecord
 
-ALL_MARKS = "*"
+ALL_MARKS, NAMED_MARKS = "*", "named"
 Plain = dict[str, Any]
 Part = tuple[str, str | list[str]]
 
@@ -97,14 +97,14 @@ class Runner:
         ``strict`` raises for the first thing typed (``sets``, ``rows``) that is refused, instead
         of marking it in the statement.
         """
-        name = filling.notebook.stem
+        name = f"{filling.notebook.stem} {filling.mark or ''}".strip()
         if name in self._running:
             circle = " -> ".join([*self._running[self._running.index(name) :], name])
             raise CarryError(
                 f"workbooks carry values in a circle: {circle}",
                 hint="one of them must own the value",
             )
-        self.progress(f"{name}{f' {filling.mark}' if filling.mark else ''}")
+        self.progress(name)
         self._running.append(name)
         opening = Opening(self, filling)
         token = _CURRENT.set(opening)
@@ -165,7 +165,7 @@ class Runner:
         for name, rows in filling.rows.items():
             typed.rows[name] = [GivenRow(r.key, r.cells, r.source) for r in rows]
         taken = record.carried if record is not None and not self.forget_taken else {}
-        typed.carried = lambda origin: self.carried(origin, taken)
+        typed.carried = lambda origin: self.carried(origin, taken, typed)
         return typed
 
     def record(self, workbook: str, filling: Filling) -> Record | None:
@@ -174,17 +174,23 @@ class Runner:
             return filling.record
         return self.job.record(workbook, filling.mark) if self.job is not None else None
 
-    def carried(self, origin: str, taken: Mapping[str, CarriedRecord]) -> Carried | None:
+    def carried(
+        self,
+        origin: str,
+        taken: Mapping[str, CarriedRecord],
+        asker: Inputs | None = None,
+    ) -> Carried | None:
         """Return a result of another workbook as it is now; None outside a job.
 
         A workbook the job does not have also gives None: the fallback then serves, unconfirmed.
+        ``asker`` is what is typed in the filling that asks.
         """
         workbook, _, name = origin.partition(".")
         if self.job is None or workbook not in self.job.workbooks:
             return None
         try:
-            if name == ALL_MARKS:
-                return self._over_marks(origin, workbook, taken)
+            if name.partition(".")[0] in (ALL_MARKS, NAMED_MARKS):
+                return self._over_marks(origin, taken, asker)
             statement = self.statement(workbook)
         except CarryError:
             raise
@@ -202,11 +208,22 @@ class Runner:
         return _carried(origin, item, str(statement["fingerprint"]), taken)
 
     def _over_marks(
-        self, origin: str, workbook: str, taken: Mapping[str, CarriedRecord]
+        self, origin: str, taken: Mapping[str, CarriedRecord], asker: Inputs | None
     ) -> Carried:
-        """Return one schedule over all marks of a workbook."""
+        """Return one schedule over the marks of a workbook, or the rows of one of its schedules.
+
+        Where marks are to be named, only those that a row of the asker names are run: a beam needs
+        the beams that bear on it, and those do not need it.
+        """
+        workbook, _, name = origin.partition(".")
+        which, dot, schedule = name.partition(".")
         marks = self.job.marks(workbook) if self.job is not None else ()
-        item = gathered(workbook, {mark: self.statement(workbook, mark) for mark in marks})
+        if which == NAMED_MARKS:
+            marks = tuple(mark for mark in marks if _names_rows_of(mark, asker))
+        statements = {mark: self.statement(workbook, mark) for mark in marks}
+        item = (
+            gathered_rows(workbook, schedule, statements) if dot else gathered(workbook, statements)
+        )
         return _carried(origin, item, item_digest(item), taken)
 
     def settings(self, workbook: str, filling: Filling) -> tuple[CodeSet, str]:
@@ -296,6 +313,12 @@ def _carried(
     return Carried(origin, item, fingerprint, taken=old)
 
 
+def _names_rows_of(mark: str, typed: Inputs | None) -> bool:
+    """Whether a cell typed in some row names a row of a mark: 'B2 A'."""
+    rows = (row for table in (typed.rows.values() if typed else ()) for row in table)
+    return any(cell.startswith(f"{mark} ") for row in rows for cell in row.cells.values())
+
+
 def inputs_of(record: Record, job_number: str) -> Inputs:
     """Return a record's entries and rows, with who confirmed each for this job."""
 
@@ -355,11 +378,16 @@ def _refuse_problem(book: Workbook, names: Sequence[str]) -> None:
     for name in names:
         columns = []
         if any(isinstance(i, Schedule) and i.name == name for i in book.items()):
-            columns = [c.name for c in book.schedule_item(name).columns]
+            columns = [c.name for c in book.schedule_item(name).columns if _applies(book, c.name)]
         problem = first_problem(book, [name, *columns])
         if problem:
             named = problem.startswith(f"{name}:")
             raise InputError(problem, where=book.name if named else f"{book.name}, {name}")
+
+
+def _applies(book: Workbook, name: str) -> bool:
+    bound = book.scope.get(name)
+    return bound is None or book.results.applies.get(bound.number, True)
 
 
 def carries(book: Workbook) -> dict[str, str]:

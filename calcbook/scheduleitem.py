@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from calcbook import units
+from calcbook import shaping, units
 from calcbook.items import Carry, Choice, Entry, Item, Line, Schedule, Solved, Text
 from calcbook.keyed import texts
 from calcbook.shown import Printed, Shown, finite, plain_value
@@ -51,20 +51,30 @@ class ScheduleWriter:
         workbook, dot, name = item.origin.partition(".")
         works = applies and bound.rows not in self.readings.problems
         ranked = self._ranked(item, keys) if works else []
+        lost = {c.number for c in bound.columns if c.type is None or c.problem}
         return {
             "key": item.key_heading,
             "rows": list(keys),
             "confirmed": [r.confirmed for r in rows],
             "sources": [r.source for r in rows],
-            "fixed": item.fixed or bool(item.same_rows),
+            "fixed": item.fixed or bool(item.same_rows) or item.name in self.readings.shaped,
+            "shaped": self._shaped(item),
             "fallback": item.name in self.readings.fallbacks,
             "stale": bool(item.origin) and carried is not None and carried.taken is not None,
             "from": {"workbook": workbook, "name": name} if dot else None,
-            "columns": [self._column(c, item, keys) for c in bound.columns if not c.problem],
-            "errors": [*(c.problem for c in bound.columns if c.problem), *bound.faults],
+            "columns": [self._column(c, item, keys) for c in bound.columns if c.number not in lost],
+            "errors": [
+                *(_why_not_there(c) for c in bound.columns if c.number in lost),
+                *bound.faults,
+            ],
             "governing": self._governing(bound, ranked, keys),
             "envelope": [self._extreme(*rank, keys) for rank in ranked],
         }
+
+    def _shaped(self, item: Schedule) -> str:
+        """Return what the rows come from where a shape gives them, '' where they are typed."""
+        here = item.shaped is not None and item.name in self.readings.shaped
+        return shaping.words(item.shaped) if here and item.shaped is not None else ""
 
     # --- columns ----------------------------------------------------------------------------
 
@@ -75,7 +85,7 @@ class ScheduleWriter:
             "number": bound.number,
             "meaning": item.meaning,
             "unit": "",
-            "role": "text" if bound.is_words else ROLES[type(item)],
+            "role": self._role(bound, schedule),
             "clause": item.clause,
             "note": item.note,
             "memory": item.memory,
@@ -101,6 +111,14 @@ class ScheduleWriter:
             labels = dict(item.labels) if isinstance(item, (Choice, Carry)) else {}
             return plain | {"texts": words, "si": [None] * len(keys), "labels": labels}
         return plain | self._numbers(bound, schedule, len(keys))
+
+    def _role(self, bound: Bound, schedule: Schedule) -> str:
+        """Return what a column is; one that a shape gives is nothing typed."""
+        role = "text" if bound.is_words else ROLES[type(bound.item)]
+        by_shape = schedule.name in self.readings.shaped and schedule.shaped is not None
+        if role == "entered" and by_shape and bound.name in schedule.shaped.gives:  # type: ignore[union-attr]
+            return "carried"
+        return role
 
     def _words(self, bound: Bound, count: int) -> list[str]:
         found = self.results.values.get(bound.name) if bound.is_words else None
@@ -135,6 +153,8 @@ class ScheduleWriter:
     def _typed(self, bound: Bound, count: int) -> list[str]:
         if bound.schedule is None or not isinstance(bound.item, (Entry, Text, Choice, Carry)):
             return []
+        if bound.schedule.name in self.readings.shaped:
+            return [""] * count
         rows = self.readings.given_rows.get(bound.schedule.rows, [])
         default = "" if isinstance(bound.item, Carry) else bound.item.value
         return [r.cells.get(bound.name, default) for r in rows] or [""] * count
@@ -233,3 +253,8 @@ class ScheduleWriter:
             if held[row if len(held) > 1 else 0]:
                 return count
         return 0
+
+
+def _why_not_there(column: Bound) -> str:
+    """Return why a column could not be accepted, or its condition cannot be decided."""
+    return column.problem or f"{column.name} is {column.lacks}"

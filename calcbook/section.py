@@ -14,6 +14,7 @@ from calcbook.items import (
     Item,
     Remark,
     Schedule,
+    Shaped,
     Solver,
     TableItem,
     Tone,
@@ -95,6 +96,24 @@ class Rows(Declarations):
     def distinct(self, *columns: str) -> None:
         """Require that no two rows have the same words in these columns together."""
         self._schedule.distinct = columns
+
+    def shaped(
+        self, by: str, *, when: tuple[str, str], takes: Mapping[str, str], gives: Mapping[str, str]
+    ) -> None:
+        """Let a shape of the package give the rows while a choice says so.
+
+        Parameters
+        ----------
+        by
+            The shape: 'truss joints'; see ``calcbook.solvers.shapes.names()``.
+        when
+            A choice declared above and the option at which the rows are the shape's.
+        takes
+            The entry, choice or carried value for each thing the shape takes; never a line.
+        gives
+            For each column of this schedule what of the shape it is.
+        """
+        self._schedule.shaped = Shaped(by, *when, dict(takes), dict(gives))
 
     def __enter__(self) -> Self:
         """Begin the block."""
@@ -212,6 +231,7 @@ class Section(Declarations):
         origin: str = "",
         same_rows: str = "",
         fixed: bool = False,
+        optional: bool = False,
         source: str = "",
         **common: Unpack[Common],
     ) -> Rows:
@@ -225,10 +245,15 @@ class Section(Declarations):
             The template's rows, each a mapping with ``key`` and texts of the entered columns.
         origin
             'workbook.schedule' the rows are brought forward from; ``rows`` is the fallback.
+            'workbook.*' gathers one row for each mark of a workbook, 'workbook.*.schedule' the
+            rows of that schedule of every mark, keyed by mark and row ('B1 A'), and
+            'workbook.named.schedule' those of the marks that a cell typed here names.
         same_rows
             A schedule of this workbook whose rows (and columns) this one shares.
         fixed
             The rows belong to the method and are not edited.
+        optional
+            There may be no rows; a sum over them is 0.
         """
         default = tuple(
             (str(row.get("key", "")), {k: str(v) for k, v in row.items() if k != "key"})
@@ -243,6 +268,7 @@ class Section(Declarations):
             origin=origin,
             same_rows=same_rows,
             fixed=fixed,
+            optional=optional,
             source=source,
             **common_parts(common),
         )

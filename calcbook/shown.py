@@ -21,7 +21,7 @@ from calcbook.items import Carry, Entry, Line
 from calcbook.tree import Negative, Number, Quoted
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Mapping, Sequence
     from types import CodeType
 
     from calcbook.bind import Bound
@@ -237,17 +237,19 @@ class Shown:
     def _close(self, step: Step) -> tuple[list[str], set[str]]:
         """Close one line; returns its operands, and those that got more figures."""
         bound = step.bound
-        if not isinstance(bound.item, Line) or not self._has_value(bound):
+        if not isinstance(bound.item, Line) or bound.is_words or not self._has_value(bound):
             return [], set()
         if step.whole is not None:
             used, code = bound.needs, step.whole
         else:
             place = self.results.branch.get(bound.number, 0)
             used, code = step.used[place], step.branches[place][1]
-        operands = [n for n in used if self._is_number(n)]
+        numbers = [n for n in used if self._is_number(n)]
+        idle = [n for n in numbers if self.results.values.get(n) is None]
+        operands = [n for n in numbers if n not in idle]
         if not operands:
             return [], set()
-        return operands, self._close_line(bound, operands, _Hand(self, bound, code))
+        return operands, self._close_line(bound, operands, _Hand(self, bound, code, idle))
 
     def _has_value(self, bound: Bound) -> bool:
         return (
@@ -288,8 +290,9 @@ class Shown:
             spoils = {n: hand.gap({n: rounded[n]}) for n in operands if self._may_grow(bound, n)}
             if not spoils:
                 break
-            worst = max(spoils, key=lambda n: spoils[n])
-            self._decimals[worst, self.operand_unit(bound, worst).text] += 1
+            keys = {n: (n, self.operand_unit(bound, n).text) for n in spoils}
+            worst = max(spoils, key=lambda n: (spoils[n], -self._decimals[keys[n]]))
+            self._decimals[keys[worst]] += 1
             grown.add(worst)
         return grown
 
@@ -298,7 +301,10 @@ class Shown:
         key = (name, unit.text)
         if key not in self._decimals:
             return False  # an entry as typed is exact already
-        size = np.abs(np.atleast_1d(np.asarray(self.results.values[name], dtype=float)))
+        exact = np.asarray(self.results.values[name], dtype=float)
+        if np.array_equal(exact, np.asarray(self.rounded(bound, name)), equal_nan=True):
+            return False
+        size = np.abs(np.atleast_1d(exact))
         largest = float(np.nanmax(size, initial=0.0)) / unit.factor
         return self._decimals[key] < units.significant_decimals(largest or 1.0, MOST)
 
@@ -306,9 +312,11 @@ class Shown:
 class _Hand:
     """A reader working a line by hand, and the printed result they should get."""
 
-    def __init__(self, shown: Shown, bound: Bound, code: CodeType) -> None:
+    def __init__(self, shown: Shown, bound: Bound, code: CodeType, idle: Sequence[str]) -> None:
         self.program, self.code = shown.program, code
         self.exact = shown.results.values
+        if idle:  # in cases that do not hold
+            self.exact = {**self.exact, **dict.fromkeys(idle, math.nan)}
         unit = shown.display(bound.name)
         single = bound.schedule is None
         printed = [shown.value(bound.name, unit)] if single else shown.column(bound.name, unit)

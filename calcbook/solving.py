@@ -42,6 +42,12 @@ def bind(item: Solver, scope: Mapping[str, Type], look_up: Callable[[str], Name]
     return Solve(solver.name, takes)
 
 
+def may_idle(item: Solver) -> tuple[str, ...]:
+    """Return the names a solver takes and does without where they do not apply."""
+    roles = solvers.find(item.by).roles
+    return tuple(name for role, _, name in filled(item) if roles[role].may_idle)
+
+
 def _wanted(told: Role, item: Solver, scope: Mapping[str, Type]) -> Type:
     """Return the type a role is to be filled with, without its rows."""
     if told.kind == "text":

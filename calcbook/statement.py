@@ -256,9 +256,16 @@ class Writer:
         takes = [
             {"role": role, "meaning": solver.roles[role].meaning, "case": case, "name": name}
             for role, case, name in solving.filled(item)
+            if self._acts(name)
         ]
         says: list[str] = list(found.says()) if isinstance(found, solvers.Solution) else []
-        return {"by": item.by, "method": solver.method, "takes": takes, "says": says}
+        told = {"by": item.by, "method": solver.method, "takes": takes, "says": says}
+        return told | {"curves": found.curves() if isinstance(found, solvers.Drawn) else []}
+
+    def _acts(self, name: str) -> bool:
+        """Whether what a solver takes applies; the key of a schedule always does."""
+        bound = self.shown.scope.get(name)
+        return bound is None or self.results.applies.get(bound.number, True)
 
     def _sides(self, bound: Bound, demand: object, limit: object) -> tuple[Plain, Plain]:
         blank: Plain = {"si": None, "value": None, "unit": "", "text": ""}

@@ -114,10 +114,14 @@ class Not(_Part):
 
 @dataclass(frozen=True, slots=True)
 class Solve(_Part):
-    """A solver at work: (role, load case or '', symbol) for all that it takes; no formula text."""
+    """A solver at work: (role, load case or '', symbol) for all that it takes; no formula text.
+
+    ``conditions`` are those under which a symbol applies at all, where the solver does without it.
+    """
 
     solver: str
     takes: tuple[tuple[str, str, Name], ...]
+    conditions: tuple[tuple[str, Node], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -156,8 +160,8 @@ def children(node: Node) -> tuple[Node, ...]:  # noqa: PLR0911  one case per kin
             return parts
         case Compare(first=first, rest=rest):
             return (first, *(part for _, part in rest))
-        case Solve(takes=takes):
-            return tuple(part for _, _, part in takes)
+        case Solve(takes=takes, conditions=conditions):
+            return (*(part for _, _, part in takes), *(test for _, test in conditions))
         case Found(solution=solution):
             return (solution,)
         case _:

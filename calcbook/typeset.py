@@ -4,8 +4,8 @@
 
 from __future__ import annotations
 
-from html import escape
 from functools import lru_cache
+from html import escape
 from typing import TYPE_CHECKING, ClassVar
 
 from calcbook.formula import names, parse

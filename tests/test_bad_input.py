@@ -285,7 +285,7 @@ USAGE = {
     "run gone.ipynb": ("there is no notebook 'gone.ipynb'",),
     "run snow": (
         "there is no workbook 'snow'",
-        "there are: wind, column-accumulation, ",
+        "there are: wind, ",
     ),
     "run wind --rows levels=.": ("'.' is a folder", "name a CSV file"),
     "run wind:B.1.": ("'B.1.' cannot be a mark",),

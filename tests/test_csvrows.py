@@ -78,6 +78,18 @@ def test_empty_cells_are_left_out(tmp_path: Path) -> None:
     assert rows == [RowRecord("A", {"use": "x"}), RowRecord("B", {"z": "1 m"})]
 
 
+def test_optional_columns_may_be_left_out(tmp_path: Path) -> None:
+    """A column that is optional is no cell of a row; given, it is read as any other."""
+    table = read_table(write(tmp_path, "k,z (m)\nA,1\n"))
+    columns = {"z": True, "R": True}
+    assert as_rows(table, columns, "x", ["R"]) == [RowRecord("A", {"z": "1 m"})]
+    with pytest.raises(InputError, match="there is no column 'R'"):
+        as_rows(table, columns, "x")
+    unitless = read_table(write(tmp_path, "k,z (m),R\nA,1,5\n"))
+    with pytest.raises(InputError, match="R"):
+        as_rows(unitless, columns, "x", ["R"])
+
+
 @pytest.mark.parametrize(
     ("text", "place", "message"),
     [

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
-from calcbook.marks import gathered
+from calcbook.marks import gathered, gathered_rows
 
 
 def line(name: str, si: float | None, **more: Any) -> dict[str, Any]:
@@ -92,3 +92,51 @@ def test_no_marks_yet() -> None:
     assert found["rows"] == []
     assert "floor-beam has no marks yet" in found["problem"]
     assert "calcbook set floor-beam:C-1" in found["problem"]
+
+
+def table(name: str, keys: list[str], **columns: list[float | None]) -> dict[str, Any]:
+    """Return a schedule of a mark, its columns in kN."""
+    return {
+        "kind": "schedule", "name": name, "applies": True, "why": "", "problem": None, "rows": keys,
+        "columns": [
+            {"name": n, "unit": "kN", "si": si, "texts": [str(v) for v in si], "problem": None,
+             "applies": True} for n, si in columns.items()
+        ],
+    }  # fmt: skip
+
+
+def test_rows_of_a_schedule_are_gathered_over_marks() -> None:
+    """Each row is named by its mark and its key, in the order of both."""
+    found = gathered_rows("floor-beam", "reactions", {
+        "B1": mark(table("reactions", ["A", "B"], R_D=[1.0, 2.0], R_L=[3.0, 4.0])),
+        "B2": mark(table("reactions", ["A"], R_D=[5.0], R_L=[6.0])),
+    })  # fmt: skip
+    assert found["rows"] == ["B1 A", "B1 B", "B2 A"]
+    assert column(found, "R_D")["si"] == [1.0, 2.0, 5.0]
+    assert column(found, "R_L")["unit"] == "kN"
+    assert column(found, "R_L")["problem"] is None
+    assert found["problem"] is None
+
+
+def test_a_mark_without_the_schedule_or_a_column_says_so() -> None:
+    """It keeps a row of its own name with the reason; the other marks have their values."""
+    broken = table("reactions", ["A"], R_D=[None])
+    broken["columns"][0]["problem"] = ["not available because of solved"]
+    idle = table("reactions", ["A"], R_D=[1.0]) | {"applies": False, "why": "no floor"}
+    found = gathered_rows("floor-beam", "reactions", {
+        "B1": mark(), "B2": mark(table("reactions", ["A"], R_D=[5.0], R_S=[6.0])),
+        "B3": mark(broken), "B4": mark(idle),
+    })  # fmt: skip
+    assert found["rows"] == ["B1", "B2 A", "B3 A", "B4"]
+    assert column(found, "R_D")["si"] == [None, 5.0, None, None]
+    assert column(found, "R_D")["problem"] == [
+        "is not in this mark", "", "not available because of solved", "does not apply: no floor",
+    ]  # fmt: skip
+    assert column(found, "R_S")["si"] == [None, 6.0, None, None]
+
+
+def test_a_workbook_without_marks_has_no_rows_to_gather() -> None:
+    """The schedule says how to make a mark."""
+    found = gathered_rows("floor-beam", "reactions", {})
+    assert found["rows"] == []
+    assert "floor-beam has no marks yet" in found["problem"]

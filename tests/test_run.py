@@ -8,6 +8,7 @@ import pytest
 
 from calcbook.errors import CalcbookError, CarryError, InputError, JobError
 from calcbook.job import Job, find_notebook
+from calcbook.record import RowRecord
 from calcbook.run import Filling, Runner, item_digest
 
 if TYPE_CHECKING:
@@ -201,3 +202,56 @@ def test_the_design_basis_decides_code_set_and_units(tmp_path: Path) -> None:
     assert wind["counts"]["problems"] == 0
     with pytest.raises(CalcbookError, match=r"units|unit system"):
         Runner().run(Filling(tmp_path / "wind-pressure.ipynb", sets={"units": "metric"}))
+
+
+BEAM = (
+    section("Ends", 'entry("w", "Load", "1 kN", unit="force")')
+    + '    with s.schedule("carried", "Reactions", key="end", origin="beam.named.reactions", '
+    'optional=True) as t:\n        t.carry("B", "R", "Reaction", unit="force")\n'
+    '    with s.schedule("borne", "Beams", key="beam", optional=True) as t:\n'
+    '        t.text("of", "Mark and end")\n        t.line("P = lookup(B, end, of)", "Load")\n'
+    '    with s.schedule("reactions", "Reactions", rows=[{"key": "A"}, {"key": "C"}]) as t:\n'
+    '        t.line("R = (w + sum(P))/2", "Reaction", unit="force", result=True)\n'
+)
+
+
+def beams(folder: Path, **borne: str) -> Job:
+    """Write beams by mark, each bearing the ends it names, and return their job."""
+    notebook(folder, "beam", BEAM)
+    for mark, end in borne.items():
+        row = f'borne = [ {{ key = "1", cells = {{ of = "{end}" }} }} ]' if end else ""
+        text = f'format = 1\nworkbook = "beam"\nmark = "{mark}"\n\n[schedules]\n{row}\n'
+        (folder / f"beam.{mark}.toml").write_text(text, encoding="utf-8")
+    return job(folder, ["beam"])
+
+
+def test_a_mark_takes_a_result_of_another_mark(tmp_path: Path) -> None:
+    """Only the marks that a row names are run; what they bring is found by mark and row."""
+    told: list[str] = []
+    runner = Runner(beams(tmp_path, B1="B2 A", B2="", B3=""), told.append)
+    found = books.items(runner.statement("beam", "B1"))
+    assert found["reactions"]["columns"][0]["si"] == [750.0, 750.0]
+    assert found["carried"]["rows"] == ["B2 A", "B2 C"]
+    assert told == ["beam B1", "beam B2"]
+    assert books.items(runner.statement("beam", "B3"))["carried"]["rows"] == []
+
+
+def test_marks_that_bear_on_each_other_are_a_circle(tmp_path: Path) -> None:
+    """The circle is named mark by mark."""
+    runner = Runner(beams(tmp_path, B1="B2 A", B2="B1 A"))
+    with pytest.raises(CarryError, match="in a circle: beam B1 -> beam B2 -> beam B1"):
+        runner.statement("beam", "B1")
+
+
+def test_an_optional_schedule_may_have_no_rows(tmp_path: Path) -> None:
+    """Sums over it are nothing, a key asked for in it is missing, and nothing is wrong."""
+    notebook(tmp_path, "beam", BEAM)
+    _, statement = Runner().run(Filling(tmp_path / "beam.ipynb"))
+    found = books.items(statement)
+    assert found["borne"]["rows"] == []
+    assert found["borne"]["problem"] is None
+    assert found["reactions"]["columns"][0]["si"] == [500.0, 500.0]
+    rows = {"borne": [RowRecord("1", {"of": "B9 A"})]}
+    _, statement = Runner().run(Filling(tmp_path / "beam.ipynb", rows=rows))
+    problem = books.items(statement)["borne"]["columns"][1]["problem"]
+    assert problem == ["row 1: there is no row 'B9 A' in end"]

@@ -40,6 +40,22 @@ def test_a_column_that_is_not_there_cannot_be_told_apart() -> None:
     assert "did you mean 'at'" in errors[0]
 
 
+def test_a_column_whose_condition_cannot_be_accepted_is_named() -> None:
+    """An entry under a condition on a refused line, and what uses it, stop nothing else."""
+    book = books.book(rows=ROWS)
+    with book.section("Trial") as s:
+        s.line("n = 1 +", "Refused", unit="count")
+        with s.schedule("rows", "Rows") as t:
+            t.text("at", "Place")
+            t.entry("F", "Load", unit="force", when="n > 2")
+            t.line("G = 2*F", "Twice", unit="force")
+    found = book.statement()["parts"][0]["items"][1]
+    assert found["errors"] == ["F is not available because of n"]
+    told = {c["name"]: c["problem"] for c in found["columns"]}
+    assert told["at"] is None
+    assert told["G"] == ["not available because of F"] * 3
+
+
 def test_a_running_sum_stands_down_to_the_row_that_is_missing() -> None:
     """Rows above a bad one have their sum, it and those below do not; a sum of all has none."""
     found = loads(ROWS)

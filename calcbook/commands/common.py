@@ -22,7 +22,7 @@ from calcbook.workbook import entered_columns
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from calcbook.items import Item
+    from calcbook.items import Item, Shaped
     from calcbook.record import RowRecord
     from calcbook.workbook import Workbook
 
@@ -93,12 +93,32 @@ def read_rows(texts: Sequence[str], book: Workbook) -> dict[str, list[RowRecord]
         if schedule.fixed:
             raise InputError(f"the rows of {name} belong to the method and are not entered",
                              where=book.name)  # fmt: skip
-        columns = {
-            column: needs_unit(item) for column, item in entered_columns(schedule).items()
+        if schedule.shaped is not None and name in book.readings.shaped:
+            other = schedule.shaped.choice
+            raise InputError(
+                f"the rows of {name} come from the shape while {other} is "
+                f"'{schedule.shaped.option}'", where=book.name,
+                hint=f"choose otherwise beside them: {other}={_others(book, schedule.shaped)}",
+            )  # fmt: skip
+        entered = {
+            column: item for column, item in entered_columns(schedule).items()
             if not item.codes or book.code.name in item.codes
         }  # fmt: skip
-        found[name] = as_rows(read_table(Path(file)), columns, f"{book.name}, schedule {name}")
+        found[name] = as_rows(
+            read_table(Path(file)),
+            {column: needs_unit(item) for column, item in entered.items()},
+            f"{book.name}, schedule {name}",
+            # where it applies after all, each row says that it has no value
+            [c for c, item in entered.items() if item.when and not getattr(item, "value", "")],
+        )
     return found
+
+
+def _others(book: Workbook, shaped: Shaped) -> str:
+    """Return the options of a choice at which rows are typed."""
+    item = book.input_item(shaped.choice)
+    options = item.options if isinstance(item, (Choice, Carry)) else ()
+    return " or ".join(f"'{option}'" for option in options if option != shaped.option)
 
 
 def needs_unit(item: Item) -> bool:

@@ -29,7 +29,6 @@ if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
 
     from calcbook.bind import Bound
-    from calcbook.inputs import Readings
     from calcbook.job import Job
     from calcbook.workbook import Workbook
 
@@ -200,18 +199,24 @@ def _everything(book: Workbook) -> Change:
             given = found.given[name]
             if given.text:
                 change.entries[name] = EntryRecord(given.text, given.source)
-        elif isinstance(bound.item, Schedule) and _has_rows_of_its_own(bound, found):
+        elif isinstance(bound.item, Schedule) and _has_rows_of_its_own(bound, book):
             change.rows[name] = [
                 RowRecord(row.key, dict(row.cells), row.source) for row in found.given_rows[name]
             ]
     return change
 
 
-def _has_rows_of_its_own(bound: Bound, found: Readings) -> bool:
-    """Whether a schedule's rows are entered here, and every cell of them was accepted."""
+def _has_rows_of_its_own(bound: Bound, book: Workbook) -> bool:
+    """Whether a schedule's rows are entered here, and every cell that applies was accepted."""
     schedule: Schedule = bound.item  # type: ignore[assignment]
-    bad = any(c.name in found.row_problems or c.name in found.problems for c in bound.columns)
-    entered = schedule.name in found.given_rows and schedule.name not in found.carried
+    found, applies = book.readings, book.results.applies
+    bad = any(
+        c.name in found.row_problems or c.name in found.problems
+        for c in bound.columns
+        if applies.get(c.number, True)
+    )
+    elsewhere = {*found.carried, *found.shaped}
+    entered = schedule.name in found.given_rows and schedule.name not in elsewhere
     return entered and not schedule.fixed and not bad
 
 

@@ -13,12 +13,17 @@ from typing import TYPE_CHECKING
 
 from calcbook.errors import DeclarationError, near_match
 from calcbook.figures import (
+    beam_elevation,
+    beam_envelope,
     build_up_section,
     column_ladder,
+    factor_matrix,
     grid_plan,
     key_plan,
     level_ladder,
     pressure_height,
+    truss_forces,
+    truss_loads,
     wind_elevation,
 )
 
@@ -32,12 +37,17 @@ if TYPE_CHECKING:
 __all__ = ["describe", "draw", "names", "roles"]
 
 _FAMILIES: dict[str, ModuleType] = {
+    "beam-elevation": beam_elevation,
+    "beam-envelope": beam_envelope,
     "build-up-section": build_up_section,
     "column-ladder": column_ladder,
+    "factor-matrix": factor_matrix,
     "grid-plan": grid_plan,
     "key-plan": key_plan,
     "level-ladder": level_ladder,
     "pressure-height": pressure_height,
+    "truss-forces": truss_forces,
+    "truss-loads": truss_loads,
     "wind-elevation": wind_elevation,
 }
 _FORMS = ("svg", "png")

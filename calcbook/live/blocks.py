@@ -302,6 +302,8 @@ def _schedule(item: Plain) -> Block:
     common = _common(item)
     if item["from"] and not item["fallback"]:
         common["notes"] += ((wording.origin_words(item),),)
+    elif item.get("shaped"):
+        common["notes"] += ((item["shaped"],),)
     elif not item["fixed"]:
         common["notes"] += tuple((words,) for words in wording.rows_standing(item))
     if item["stale"]:

@@ -147,10 +147,11 @@ class Writer:
         }
 
     def _solver(self, item: Item) -> dict[str, Any]:
-        lines: list[list[Node]] = [[words(item["method"])]]
+        taken: list[list[Node]] = []
         for meaning, names in solver_takes(item):
             named = [[f"{case} " if case else "", symbol(name)] for case, name in names]
-            lines.append([f"{meaning}: ", *joined(named, ", ")])
+            taken.append([f"{meaning}: " if taken else f"Takes {meaning}: ", *joined(named, ", ")])
+        lines: list[list[Node]] = [[words(item["method"])], joined(taken, "; ")]
         lines += [[words(text)] for text in item["says"]]
         return {"t": "words", "words": phrase(item["meaning"]), "lines": lines}
 
@@ -211,8 +212,13 @@ class Writer:
             notes.insert(0, fallback_words(item))
         elif item.get("from"):
             notes.insert(0, origin_words(self.anchors, item))
+        elif item.get("shaped"):
+            notes.insert(0, [words(item["shaped"])])
         if item.get("stale"):
             lines.append([strong("Stale: "), "the rows have moved on since they were taken"])
+        if not item["rows"] and not item["problem"]:
+            notes = [] if item.get("fallback") else notes  # nothing stands in for what is not there
+            return {"t": "entry", "value": ["none"], "lines": lines, "notes": notes}
         if self._stands_elsewhere(item):
             told = f"{len(item['rows'])} rows"
             return {"t": "entry", "value": [told], "lines": lines, "notes": notes}

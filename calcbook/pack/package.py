@@ -146,7 +146,7 @@ def _carried_now(runner: Runner, book: Workbook) -> Taken:
         workbook, _, name = origin.partition(".")
         if runner.job is None or workbook not in runner.job.workbooks:
             continue
-        found = runner.carried(origin, {})
+        found = runner.carried(origin, {}, book.inputs)
         if found is None or found.item is None:
             raise CarryError(f"{workbook} has no result '{name}'", where=book.name)
         now[origin] = _taken(origin, found.item)

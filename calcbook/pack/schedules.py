@@ -8,14 +8,16 @@ from typing import TYPE_CHECKING, Any
 from calcbook import formula, typeset, units
 from calcbook.pack import nodes
 from calcbook.pack.nodes import Node, joined, phrase, strong, symbol, words
+from calcbook.tree import Quoted, names, walk
 from calcbook.wording import amount, cases_told, solved_words
 
 if TYPE_CHECKING:
-    from collections.abc import Sequence
+    from collections.abc import Collection, Sequence
 
     from calcbook.pack.anchors import Item
 
 NUMBER = re.compile(r"([+-]?\d+(?:\.(\d*))?(?:[eE][+-]?\d+)?)(?:\s+(\D.*))?")
+OWN_NUMBER = re.compile(r"(?<=_)\d+$")
 WORDY = ("text", "choice")
 NAMED_ROWS = 6
 PROBES = 3
@@ -57,7 +59,8 @@ def lookup_table(item: Item) -> dict[str, Any]:
 def legend(item: Item) -> list[list[Node]]:
     """Return what each column is, in their order; a formula stands on a line of its own.
 
-    A column worked in full under the schedule has its formula there.
+    A column worked in full under the schedule has its formula there. Of numbered columns alike
+    (P_1, P_2, P_3) the first is told, and that the others are likewise.
     """
     worked = {
         (line.get("name"), line.get("formula"))
@@ -65,24 +68,80 @@ def legend(item: Item) -> list[list[Node]]:
     }
     lines: list[list[Node]] = []
     told: list[list[Node]] = []
-    for column in item["columns"]:
+    for column, alike in _alike(item["columns"], {name for name, _ in worked}):
+        others = _likewise(alike)
         clause = f" ({words(column['clause'])})" if column.get("clause") else ""
         meaning = phrase(column.get("meaning", ""))
         formulas = {case["formula"] for case in column.get("cases") or ()} or {column["formula"]}
         if not column.get("applies", True):
             told.append([symbol(column["name"]), " ", *meaning, ": not applied"])
         elif column.get("solved"):
-            told.append(
-                [symbol(column["name"]), " ", *meaning, f", {solved_words(column)}{clause}"]
-            )
+            said = [" ", *meaning, f", {solved_words(column)}{clause}"]
+            told.append([symbol(column["name"]), *said, *others])
+        elif column["role"] == "computed" and _listed(column, item["rows"]):
+            told.append([symbol(column["name"]), " ", *meaning, f", by row{clause}"])
         elif column["role"] == "computed" and {(column["name"], f) for f in formulas} - worked:
             lines += [joined(told, "; "), *_definitions(column, [*meaning, clause])]
+            lines[-1] = [*lines[-1], *others]
             told = []
         elif column["role"] not in WORDY and "labels" not in column:  # words are headed by words
             role = {"entered": ", entered", "carried": ", brought forward"}.get(column["role"], "")
             role = "" if item.get("fixed") else role
             told.append([symbol(column["name"]), " ", *meaning, f"{role}{clause}"])
     return [line for line in (*lines, joined(told, "; ")) if line]
+
+
+def _alike(columns: Sequence[Column], worked: Collection[str]) -> list[tuple[Column, list[Column]]]:
+    """Return the columns, each with those after it that are alike but for their number.
+
+    A column that is worked in full elsewhere stands for itself.
+    """
+    groups: list[tuple[Column, list[Column]]] = []
+    for column in columns:
+        pattern = None if column["name"] in worked else _pattern(column)
+        if pattern is not None and groups and pattern == _pattern(groups[-1][0]):
+            groups[-1][1].append(column)
+        else:
+            groups.append((column, []))
+    return groups
+
+
+def _pattern(column: Column) -> tuple[object, ...] | None:
+    """Return what is told of a numbered column with its number left open; None for another."""
+    found = OWN_NUMBER.search(column["name"])
+    computed = column["role"] == "computed" or bool(column.get("solved"))
+    if not found or not computed or not column.get("applies", True):
+        return None
+    number = found[0]
+    own = re.compile(
+        rf"(?<=[_A-Za-z]){number}(?![0-9A-Za-z])|(?<=== ){number}\b|(?<='){number}(?=')"
+    )
+    cases = [
+        (own.sub("#", case["when"]), own.sub("#", case["formula"]), case.get("holds"))
+        for case in column.get("cases") or ()
+    ]
+    told = (column["name"], column["formula"], solved_words(column), column.get("clause", ""))
+    meaning = re.sub(rf"\b{number}\b", "#", own.sub("#", column.get("meaning", "")))
+    return meaning, *(own.sub("#", text) for text in told), *cases
+
+
+def _likewise(alike: Sequence[Column]) -> list[Node]:
+    """Return ', and P_2 to P_6 likewise', or nothing."""
+    if not alike:
+        return []
+    last = [" to ", symbol(alike[-1]["name"])] if len(alike) > 1 else []
+    return [", and ", symbol(alike[0]["name"]), *last, " likewise"]
+
+
+def _listed(column: Column, rows: Sequence[str]) -> bool:
+    """Whether a column lists a number for each row of a fixed table: its cells say it all."""
+    cases = column.get("cases") or ()
+    for case in cases:
+        test = formula.parse(case["when"]) if case["when"] else None
+        keys = [p.text for p in walk(test) if isinstance(p, Quoted)] if test is not None else []
+        if not keys or not set(keys) <= set(rows) or names(formula.parse(case["formula"])):
+            return False
+    return bool(cases)
 
 
 def _definitions(column: Column, meaning: list[Node]) -> list[list[Node]]:

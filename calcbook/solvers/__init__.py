@@ -19,10 +19,14 @@ from calcbook.errors import DeclarationError, StaticsError, near_match
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
 
-__all__ = ["Outcome", "Role", "Solution", "Solver", "find", "names", "outcome", "solve"]
+__all__ = ["Drawn", "Outcome", "Role", "Solution", "Solver", "find", "names", "outcome", "solve"]
 
 #: Where each solver is described; imported when a workbook first asks for it.
-_MODULES = {"combinations": "calcbook.solvers.combinations"}
+_MODULES = {
+    "beam": "calcbook.solvers.beam",
+    "combinations": "calcbook.solvers.combinations",
+    "truss": "calcbook.solvers.truss",
+}
 _KEPT = 64
 
 
@@ -42,6 +46,8 @@ class Role:
         It is given once for each load case: a mapping from case to name.
     optional
         A solver does without it.
+    may_idle
+        What fills it may be under a condition that does not hold: the solver is given None.
     """
 
     meaning: str
@@ -49,6 +55,7 @@ class Role:
     rows: str = ""
     by_case: bool = False
     optional: bool = False
+    may_idle: bool = False
 
 
 @dataclass(frozen=True)
@@ -86,6 +93,15 @@ class Solution(Protocol):
         ...
 
 
+@runtime_checkable
+class Drawn(Protocol):
+    """A solution that can be drawn."""
+
+    def curves(self) -> list[dict[str, Any]]:
+        """Return curves: each with ``name``, and lists ``x``, ``largest``, ``smallest`` in SI."""
+        ...
+
+
 @dataclass(frozen=True)
 class Solver:
     """A solver of the package, as workbooks see it.
@@ -99,6 +115,9 @@ class Solver:
     run
         Takes values by role (floats, arrays over rows, lists of texts; mappings by case) and
         returns the solution. Raises StaticsError for what cannot be solved.
+    independent
+        Sets of rows of which each is solved on its own: a row without a value in some column has
+        no outcomes, and the others have theirs.
     """
 
     name: str
@@ -106,6 +125,7 @@ class Solver:
     roles: Mapping[str, Role]
     outcomes: Mapping[str, Outcome]
     run: Callable[[Mapping[str, Any]], Solution]
+    independent: frozenset[str] = frozenset()
     _kept: OrderedDict[object, Solution | StaticsError] = field(
         default_factory=OrderedDict, compare=False
     )
@@ -118,7 +138,7 @@ class Solver:
         key = tuple((role, _key(value)) for role, value in given.items())
         if key not in self._kept:
             try:
-                self._kept[key] = self.run(given)
+                self._kept[key] = self._run(given)
             except StaticsError as error:
                 self._kept[key] = error
             except Exception as error:
@@ -130,6 +150,59 @@ class Solver:
         if isinstance(found, StaticsError):
             raise found
         return found
+
+    def _run(self, given: Mapping[str, Any]) -> Solution:
+        """Solve for the rows that have all their values, where rows are independent."""
+        bad: dict[str, np.ndarray] = {}
+        for role, value in given.items():
+            label = self.roles[role].rows
+            if label not in self.independent or self.roles[role].kind == "text":
+                continue
+            for column in value.values() if isinstance(value, dict) else (value,):
+                if column is not None:
+                    bad[label] = bad.get(label, np.zeros(len(column), bool)) | np.isnan(column)
+        good = {label: ~rows for label, rows in bad.items() if rows.any()}
+        if not good:
+            return self.run(given)
+        if not all(rows.any() for rows in good.values()):
+            raise StaticsError("no row has all its values")
+        picked = {r: _rows_of(v, good.get(self.roles[r].rows)) for r, v in given.items()}
+        return _SomeRows(self, self.run(picked), good)
+
+
+class _SomeRows:
+    """A solution over the rows that have values; the others have nan and no words."""
+
+    def __init__(self, solver: Solver, found: Solution, good: Mapping[str, np.ndarray]) -> None:
+        self.solver, self.found, self.good = solver, found, good
+
+    def give(self, outcome: str, case: str) -> object:
+        """Return an outcome with the rows left out in their places."""
+        given, told = self.found.give(outcome, case), self.solver.outcomes[outcome]
+        if told.rows not in self.good:
+            return given
+        rows = self.good[told.rows]
+        words = told.kind == "text"
+        every = np.full(len(rows), "" if words else np.nan, object if words else float)
+        every[rows] = given
+        return list(every) if words else every
+
+    def says(self) -> tuple[str, ...]:
+        """Return what the solution says, and how many rows were left out."""
+        left_out = sum(int((~rows).sum()) for rows in self.good.values())
+        noun = "row" if left_out == 1 else "rows"
+        return (*self.found.says(), f"{left_out} {noun} left out for want of a value")
+
+
+def _rows_of(value: object, good: np.ndarray | None) -> object:
+    """Return a column, texts or a mapping of columns with the good rows only."""
+    if good is None or value is None:
+        return value
+    if isinstance(value, dict):
+        return {case: _rows_of(column, good) for case, column in value.items()}
+    if isinstance(value, list):
+        return [text for text, held in zip(value, good, strict=True) if held]
+    return np.asarray(value)[good]
 
 
 def names() -> tuple[str, ...]:
@@ -165,28 +238,46 @@ def solve(name: str, given: Mapping[str, Any], *, array: bool) -> object:
         Without ``array``, for what cannot be solved.
     """
     solver = find(name)
-    texts = {role for role, told in solver.roles.items() if told.kind == "text"}
-    columns = {role for role, told in solver.roles.items() if told.rows}
+    roles = solver.roles
     if not array:
-        return solver.solution({r: _plain(v, words=r in texts) for r, v in given.items()})
-    count = max((_cases(v, column=r in columns) for r, v in given.items()), default=1)
-    return [_one_of_many(solver, given, texts, columns, case) for case in range(count)]
+        return solver.solution({r: _plain(v, roles[r]) for r, v in given.items()})
+    count = max((_cases(v, roles[r]) for r, v in given.items()), default=1)
+    return [_one_of_many(solver, given, case) for case in range(count)]
 
 
-def _one_of_many(
-    solver: Solver, given: Mapping[str, Any], texts: set[str], columns: set[str], case: int
-) -> Solution | None:
-    picked = {
-        r: _plain(_at(v, case, column=r in columns), words=r in texts) for r, v in given.items()
-    }
+def _one_of_many(solver: Solver, given: Mapping[str, Any], case: int) -> Solution | None:
+    roles = solver.roles
     try:
-        return solver.solution(picked)
+        return solver.solution(
+            {r: _plain(_at(v, case, roles[r]), roles[r]) for r, v in given.items()}
+        )
     except StaticsError:
         return None
 
 
+@dataclass(frozen=True)
+class _Sometimes:
+    """A value of many cases that applies in some of them."""
+
+    value: object
+    held: np.ndarray
+
+
+def acting(held: object, value: object) -> object:
+    """Return a value under a condition: None where it does not hold.
+
+    With many cases the condition may hold in some only, shape (cases,).
+    """
+    every = np.asarray(held, dtype=bool)
+    if every.all():
+        return value
+    return _Sometimes(value, every) if every.any() else None
+
+
 def outcome(solution: object, name: str, case: str, rows: int | None) -> Any:  # noqa: ANN401
-    """Return an outcome of what ``solve`` returned; ``rows`` is the length of a column.
+    """Return an outcome of what ``solve`` returned; ``rows`` is None for a single value.
+
+    With many cases ``rows`` is the length of a column.
 
     For many cases a value becomes an array (cases,), a column (rows, cases), with nan where a
     case could not be solved.
@@ -207,11 +298,13 @@ def _key(value: object) -> object:
     return tuple(value) if isinstance(value, list) else value
 
 
-def _plain(value: object, *, words: bool) -> object:
+def _plain(value: object, told: Role) -> object:
     """Return a value as a solver takes it: a float, an array of floats or a list of texts."""
     if isinstance(value, dict):
-        return {case: _plain(one, words=words) for case, one in value.items()}
-    if words:
+        return {case: _plain(one, told) for case, one in value.items()}
+    if value is None and told.may_idle:
+        return None
+    if told.kind == "text":
         single = isinstance(value, str) or np.ndim(value) == 0  # type: ignore[arg-type]
         return str(value) if single else [str(v) for v in np.ravel(np.asarray(value, object))]
     if value is None:
@@ -220,17 +313,21 @@ def _plain(value: object, *, words: bool) -> object:
     return float(found) if found.ndim == 0 else found
 
 
-def _cases(value: object, *, column: bool) -> int:
+def _cases(value: object, told: Role) -> int:
     if isinstance(value, dict):
-        return max((_cases(v, column=column) for v in value.values()), default=1)
+        return max((_cases(v, told) for v in value.values()), default=1)
+    if isinstance(value, _Sometimes):
+        return max(_cases(value.value, told), len(value.held))
     found = np.asarray(value)
-    return found.shape[-1] if found.ndim == (2 if column else 1) else 1
+    return found.shape[-1] if found.ndim == (2 if told.rows else 1) else 1
 
 
-def _at(value: object, case: int, *, column: bool) -> object:
+def _at(value: object, case: int, told: Role) -> object:
     if isinstance(value, dict):
-        return {name: _at(v, case, column=column) for name, v in value.items()}
+        return {name: _at(v, case, told) for name, v in value.items()}
+    if isinstance(value, _Sometimes):
+        return _at(value.value, case, told) if value.held[case] else None
     found = np.asarray(value)
-    if found.ndim < (2 if column else 1):
+    if found.ndim < (2 if told.rows else 1):
         return value
     return found[..., min(case, found.shape[-1] - 1)]

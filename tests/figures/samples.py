@@ -322,3 +322,29 @@ def _flipped(one: dict[str, Any]) -> dict[str, Any]:
     if old["unit"] != "kPa":
         return one
     return {**one, "value": value(_turned(old["text"]), "kPa", -old["si"])}
+
+
+MATRIX = figure(
+    "factor-matrix", combinations="listed", factors=["a_D", "a_Dmin", "a_L1", "a_W"],
+    largest=["c_P"], smallest=["d_P"],
+)  # fmt: skip
+
+
+def factor_matrix(
+    keys: tuple[str, ...] = ("1", "4a", "6"), largest: tuple[str, ...] = ("4a", "1", "4a")
+) -> dict[str, Any]:
+    """Return combinations with their factors, and three effects with those that govern them."""
+    texts = {
+        "a_D": ("1.400", "1.200", "0.0000"),
+        "a_Dmin": ("0.0000", "0.0000", "0.9000"),
+        "a_L1": ("0.0000", "1.000", "0.0000"),
+        "a_W": ("0.0000", "0.7143", "1.000"),
+    }
+    columns = [
+        column(name, "", [found[n % 3] for n in range(len(keys))]) for name, found in texts.items()
+    ]
+    governs = schedule(
+        "governing", ["C-1", "C-2", "B1"],
+        column("c_P", "", list(largest)), column("d_P", "", ["6", "6", ""]),
+    )  # fmt: skip
+    return statement(schedule("listed", list(keys), *columns), governs)

@@ -447,3 +447,13 @@ def test_undated_job_says_so() -> None:
     pages = texts(packed(one(), revision="", issue_date="", prepared="", number="", place=""))
     assert all("no revision, not dated" in page for page in pages)
     assert "job number not given" in pages[0]
+
+
+def test_a_schedule_without_rows_is_one_line() -> None:
+    """An optional schedule that lists nothing says none, without its columns and formulas."""
+    load = clinic.column("P", "Point load", "kN", "computed", [], formula="2*w")
+    table = clinic.schedule("1.1", "points", "Point loads", [], columns=[load], fallback=True)
+    said = " ".join(texts(packed(one(table))))
+    assert "Point loads none" in said
+    assert "fallback" not in said
+    assert "Level" not in said

@@ -71,12 +71,66 @@ def test_a_solver_says_what_it_takes_and_lines_say_where_they_come_from() -> Non
 
 
 def test_a_row_without_a_value_is_named_and_the_rest_stands() -> None:
-    """A bad row takes the value from what is solved with it, with the row's reason."""
+    """Rows solved each on its own: a bad one has no outcomes, with its reason, others theirs."""
     rows = {"effects": [("B1", {"D": "100 kN", "W": "30"}), ("B2", {"D": "1 kN", "W": "1 kN"})]}
     shown = items(combined(rows=rows).statement())
-    assert "not available because of W" in shown["govern"]["problem"]
-    assert "B1" in shown["govern"]["problem"]
-    assert shown["result"]["columns"][0]["problem"][0] == "not available because of govern"
+    assert shown["govern"]["problem"] is None
+    assert "1 row left out for want of a value" in shown["govern"]["says"]
+    for column in shown["result"]["columns"]:
+        assert column["problem"] == ["row B1: not available because of W", ""]
+    columns = {c["name"]: c for c in shown["result"]["columns"]}
+    assert columns["U_max"]["si"] == pytest.approx([None, 2.2e3])
+    assert columns["c_max"]["texts"] == ["", "2"]
+    assert "not available because of U_max" in shown["U_u"]["problem"]
+
+
+def test_no_row_with_a_value_is_a_problem_of_the_solver() -> None:
+    """Where every row lacks a value, the solver says so."""
+    shown = items(combined(rows={"effects": [("B1", {"D": "100 kN", "W": "30"})]}).statement())
+    assert "no row has all its values" in shown["govern"]["problem"]
+
+
+def with_wind(when: str, second: str = "500 kN") -> Workbook:
+    """Return a workbook with a second wind case under a condition."""
+    found = book()
+    with found.section("Combinations") as s:
+        s.entry("n", "Wind cases", "1", unit="count")
+        with s.schedule("effects", "Effects", key="effect", rows=[
+            {"key": "B1", "D": "100 kN", "W1": "30 kN", "W2": second},
+        ]) as t:  # fmt: skip
+            t.entry("D", "Dead load", unit="force")
+            t.entry("W1", "Wind 1", unit="force")
+            t.entry("W2", "Wind 2", unit="force", when=when)
+        with s.schedule("listed", "Combinations", key="name", fixed=True, rows=[{"key": "4"}]) as t:
+            t.line("f_D = 1.2", "Dead load")
+            t.line("f_W = 1.0", "Wind")
+        s.solver("govern", "Governing", by="combinations", takes={
+            "effects": {"D": "D", "W1": "W1", "W2": "W2"}, "factors": {"D": "f_D", "W": "f_W"},
+            "combinations": "name",
+        })  # fmt: skip
+        with s.schedule("result", "Governing", same_rows="effects") as t:
+            t.solved("U", "Largest", of="govern", gives="largest value", result=True)
+        s.line("U_u = max(U)", "Largest of all", unit="force", result=True)
+    return found
+
+
+@pytest.mark.parametrize(("when", "second", "largest"), [
+    ("n >= 2", "500 kN", 150e3), ("n >= 2", "", 150e3), ("n >= 1", "500 kN", 620e3),
+])  # fmt: skip
+def test_a_solver_does_without_what_does_not_apply(when: str, second: str, largest: float) -> None:
+    """A column whose condition does not hold is not combined, whatever stands in it."""
+    shown = items(with_wind(when, second).statement())
+    assert shown["U_u"]["value"]["si"] == largest
+    taken = [told["name"] for told in shown["govern"]["takes"]]
+    assert ("W2" in taken) == (largest > 200e3)
+
+
+def test_many_cases_differ_in_what_applies() -> None:
+    """The condition of a column varies over cases: each has the columns that apply in it."""
+    found = with_wind("n >= 2")
+    found.evaluate()
+    many = cases.evaluate(found, {"n": ["1", "2", "1"]})
+    assert pytest.approx(many["U_u"]) == [150e3, 620e3, 150e3]
 
 
 def test_many_cases_are_each_solved() -> None:

@@ -23,7 +23,7 @@ from calcbook.compile import namespace, python_source
 from calcbook.dimensions import Type
 from calcbook.errors import FormulaError
 from calcbook.formula import parse
-from calcbook.items import Check, Line, Schedule
+from calcbook.items import Check, Line, Schedule, Solved
 from calcbook.job import templates
 from calcbook.tree import KEYED, Call, Compare, Name, Quoted, names, walk
 from calcbook.units import DIMENSIONLESS, kind, unit
@@ -113,7 +113,7 @@ def of_workbook(book: Any) -> Iterator[Shipped]:
             yield Shipped(where, item.when, types)
         if isinstance(item, Check):
             yield Shipped(where, item.formula, types)
-        if isinstance(item, Line):
+        if isinstance(item, Line) and not isinstance(item, Solved):
             gives = item.gives.factor if item.gives is not None else 1.0
             for condition, formula in item.branches:
                 yield Shipped(where, formula, types, item.takes, gives)
