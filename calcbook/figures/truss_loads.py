@@ -1,0 +1,169 @@
+"""A truss with the loads at its joints, one picture for each load case shown."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+from calcbook.figures import lookup
+from calcbook.figures.lookup import Missing, Shown
+from calcbook.figures.sketch import GREY, INK, MARGIN, PAPER, ROW, WIDTH, Sketch, text_width
+from calcbook.figures.truss_frame import NEEDS as FRAME
+from calcbook.figures.truss_frame import TAKES as MORE
+from calcbook.figures.truss_frame import Frame, clear_of, frame_of
+from calcbook.units import pretty_unit
+
+if TYPE_CHECKING:
+    from collections.abc import Mapping
+
+    from calcbook.figures.sketch import Point
+
+NEEDS = (*FRAME, "loads", "down", "right")
+TAKES = MORE
+
+_ARROW = 13.0
+_LEAST = 3.5
+_GAP = 10.0
+
+
+@dataclass(frozen=True)
+class JointLoad:
+    """The load at one joint: downward and to the right, as printed."""
+
+    joint: str
+    down: Shown
+    right: Shown
+
+    @property
+    def size(self) -> float:
+        """The force, in SI."""
+        return math.hypot(self.down.si, self.right.si)
+
+    @property
+    def words(self) -> str:
+        """What is printed beside the arrow: the parts that are not nothing."""
+        parts = [("", self.down), ("→ ", self.right)]
+        return ", ".join(f"{sign}{part.text}" for sign, part in parts if part.si)
+
+
+@dataclass(frozen=True)
+class Picture:
+    """One load case: its column, what it is, its unit, and the loads that are not nothing."""
+
+    column: str
+    name: str
+    unit: str
+    loads: tuple[JointLoad, ...]
+
+
+def gather(statement: lookup.Record, uses: Mapping[str, Any]) -> tuple[Picture, ...]:
+    """Look up the joint loads of every load case; one that does not apply is left out."""
+    found = []
+    keys = lookup.rows(statement, uses["joints"])
+    for table, down, right in zip(uses["loads"], uses["down"], uses["right"], strict=True):
+        cells = (lookup.cells(statement, t, c) for t, c in ((table, down), (uses["joints"], right)))
+        if isinstance(keys, Missing):
+            continue
+        rows = [
+            JointLoad(key, d, r)
+            for key, d, r in zip(keys, *cells, strict=True)
+            if isinstance(d, Shown) and isinstance(r, Shown)
+        ]
+        if rows:
+            loads = tuple(load for load in rows if load.size)
+            told = lookup.column(statement, table, down) or {}
+            found.append(Picture(down, str(told.get("meaning") or down), rows[0].down.unit, loads))
+    return tuple(found)
+
+
+def describe(statement: lookup.Record, uses: Mapping[str, Any]) -> str:
+    """Return the truss and its joint loads in words."""
+    frame = frame_of(statement, uses)
+    if isinstance(frame, Missing):
+        return f"No truss is drawn: {frame.why}."
+    held = ", ".join(f"{joint} ({kind})" for joint, kind, _ in frame.held)
+    told = [
+        f"Truss of {len(frame.joints)} joints and {len(frame.members)} members, held at {held}."
+    ]
+    for picture in gather(statement, uses):
+        each = ", ".join(f"{load.joint} {load.words}" for load in picture.loads) or "none"
+        told.append(f"{picture.name}, joint loads in {picture.unit}, down and right: {each}.")
+    return " ".join(told)
+
+
+def draw(statement: lookup.Record, uses: Mapping[str, Any]) -> Sketch:
+    """Draw the truss once for each load case, its loads as arrows with their values."""
+    sketch = Sketch()
+    frame = frame_of(statement, uses)
+    if isinstance(frame, Missing):
+        sketch.paragraph(MARGIN, 0.0, f"No truss is drawn: {frame.why}.")
+        return sketch
+    low = 0.0
+    for picture in gather(statement, uses):
+        top = max(y for _, y in frame.joints.values())
+        low = _one(sketch, frame.moved(top + _ARROW + ROW + _GAP - low), picture) - ROW
+    sketch.paragraph(
+        MARGIN, low,
+        "Joints are named; values are downward, after an arrow to the right, with their signs. "
+        "Each picture has its own scale of arrows; a joint without an arrow has no load.",
+    )  # fmt: skip
+    return sketch
+
+
+def _one(sketch: Sketch, frame: Frame, picture: Picture) -> float:
+    """Draw the truss with one load case; return the lowest height used."""
+    title_at = max(y for _, y in frame.joints.values()) + _ARROW + 2.0 * ROW
+    sketch.text(
+        MARGIN, title_at, f"{picture.name}, {pretty_unit(picture.unit)}", ink=INK, bold=True
+    )
+    for member in frame.members:
+        sketch.line(*frame.ends(member), weight=0.9, gid=f"member-{member[0]}")
+    frame.supports(sketch)
+    for x, y in frame.joints.values():
+        sketch.disc(x, y, 0.8, fill=PAPER)
+    most = max((load.size for load in picture.loads), default=0.0)
+    taken: list[tuple[float, float, float]] = []
+    for load in picture.loads:
+        upper = frame.is_upper(load.joint)
+        far = _arrow(sketch, frame, load, max(_ARROW * load.size / most, _LEAST), picture.column)
+        _value(sketch, load.words, far, taken, upper=upper)
+    _names(sketch, frame, taken)
+    return min(y for _, y in frame.joints.values()) - _ARROW
+
+
+def _arrow(sketch: Sketch, frame: Frame, load: JointLoad, long: float, column: str) -> Point:
+    """Draw one load from outside of the truss: onto the joint, or away; return its outer end."""
+    x, y = frame.joints[load.joint]
+    along = (load.right.si / load.size, -load.down.si / load.size)
+    upper = frame.is_upper(load.joint)
+    toward = (along[1] < 0.0) == upper or (along[1] == 0.0 and along[0] > 0.0)
+    away = -1.0 if toward else 1.0
+    near = (x + away * 1.2 * along[0], y + away * 1.2 * along[1])
+    far = (x + away * (1.2 + long) * along[0], y + away * (1.2 + long) * along[1])
+    sketch.arrow(*((far, near) if toward else (near, far)), gid=f"load-{column}-{load.joint}")
+    return far
+
+
+def _value(
+    sketch: Sketch, words: str, far: Point, taken: list[tuple[float, float, float]], *, upper: bool
+) -> None:
+    """Write a load's value beyond its arrow, clear of those before."""
+    step = ROW - 0.6 if upper else -(ROW - 0.6)
+    at = far[1] + (2.2 if upper else -2.2)
+    half = text_width(words) / 2.0
+    across = min(max(far[0], MARGIN + half), WIDTH - MARGIN - half)
+    while not clear_of(taken, across, at, words):
+        at += step
+    sketch.text(across, at, words, align="center", patch=True)
+
+
+def _names(sketch: Sketch, frame: Frame, taken: list[tuple[float, float, float]]) -> None:
+    """Write the names of the joints inside the truss, clear of the values."""
+    for key, (x, y) in frame.joints.items():
+        upper = frame.is_upper(key)
+        for dx, dy in ((3.6, -3.2), (-3.6, -3.2), (3.6, 3.2), (-3.6, 3.2)):
+            at = y + (dy if upper else -dy)
+            if clear_of(taken, x + dx, at, key):
+                sketch.text(x + dx, at, key, align="center", ink=GREY, patch=True)
+                break
