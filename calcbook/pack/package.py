@@ -78,10 +78,23 @@ def pack_notebook(path: Path) -> bytes:
     job = Job.find(path.resolve().parent)
     if job is not None and path.stem not in job.workbooks:
         job = None
-    runner = Runner(job)
-    _, statement = runner.run(Filling(path))
-    title = f"Calculation: {statement['title']}"
-    return make_pack(cover_of(runner, job), [statement], draw, title=title)
+    return pack_filling(job, Filling(path)).pdf
+
+
+def pack_filling(
+    job: Job | None, filling: Filling, progress: Callable[[str], None] | None = None
+) -> Packed:
+    """Return the pages of one filling of a workbook; nothing is noted as taken.
+
+    Raises CalcbookError as ``pack_job`` does.
+    """
+    runner = Runner(job, progress)
+    _, statement = runner.run(filling)
+    cover = cover_of(runner, job)
+    if progress is not None:
+        progress("pages")
+    pdf = make_pack(cover, [statement], draw, title=f"Calculation: {statement['title']}")
+    return Packed(pdf, (statement,), ())
 
 
 def cover_of(runner: Runner, job: Job | None) -> Cover:
