@@ -15,8 +15,9 @@ from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress, Steps
+from calcbook.commands.saved import SavedOutputs, moved_on, moved_words
 from calcbook.diskfile import in_plain_words, write_whole
-from calcbook.errors import InputError, JobError, near_match
+from calcbook.errors import CalcbookError, InputError, JobError, near_match
 from calcbook.job import BASIS, Job, template_folder, templates
 from calcbook.record import EntryRecord
 from calcbook.run import Filling, Runner, all_items
@@ -100,6 +101,7 @@ def open_job(arguments: Namespace) -> int:
     if importlib.util.find_spec("jupyterlab") is None:
         raise JobError("JupyterLab is not installed",
                        hint="install it with: python -m pip install jupyterlab")  # fmt: skip
+    _prepare_outputs(job)
     folder = job.folder.resolve()
     words = [sys.executable, "-m", "jupyterlab", "--LabApp.news_url=None",
              f"--ServerApp.root_dir={folder}", *arguments.passed]  # fmt: skip
@@ -111,6 +113,28 @@ def open_job(arguments: Namespace) -> int:
                     raise JobError(f"JupyterLab stopped with status {status}",
                                    hint=_why_stopped(arguments))  # fmt: skip
                 return 0
+
+
+def _prepare_outputs(job: Job) -> None:
+    """Take dead views out of the saved outputs, and say which show what is no longer so."""
+    with Progress() as progress:
+        runner = Runner(job, progress)
+        for workbook in job.workbooks:
+            try:
+                _prepare(SavedOutputs(job.notebook(workbook)), job, runner, workbook)
+            except CalcbookError as error:  # JupyterLab is where it can be put right
+                print(f"{workbook}: its saved outputs cannot be compared: {error}")
+
+
+def _prepare(outputs: SavedOutputs, job: Job, runner: Runner, workbook: str) -> None:
+    outputs.drop_views()
+    try:
+        shown = moved_on(outputs, job, runner, workbook)
+        outputs.say_moved(shown)
+    finally:
+        outputs.save()
+    if shown:
+        print(f"{workbook}: {moved_words(shown)}")
 
 
 def _why_stopped(arguments: Namespace) -> str:
