@@ -10,7 +10,9 @@ if TYPE_CHECKING:
     from calcbook.workbook import Workbook
 
 
-def open_workbook(name: str, title: str, *, signs: Mapping[str, str] | None = None) -> Workbook:
+def open_workbook(
+    name: str, title: str, *, signs: Mapping[str, str] | None = None, marks: bool = False
+) -> Workbook:
     """Open the workbook a notebook declares; called in its first code cell.
 
     Parameters
@@ -22,6 +24,8 @@ def open_workbook(name: str, title: str, *, signs: Mapping[str, str] | None = No
         The heading on paper.
     signs
         The sign conventions: what is positive, by quantity.
+    marks
+        The workbook is meant for several fillings, one for each mark of the drawings.
 
     Raises
     ------
@@ -34,7 +38,10 @@ def open_workbook(name: str, title: str, *, signs: Mapping[str, str] | None = No
 
     opening = run.opening()
     if opening is not None:
-        return opening.open(name, title, signs)
-    from calcbook.live import open_live  # noqa: PLC0415  widgets are needed in Jupyter only
+        book = opening.open(name, title, signs)
+    else:
+        from calcbook.live import open_live  # noqa: PLC0415  widgets are needed in Jupyter only
 
-    return open_live(name, title, signs)
+        book = open_live(name, title, signs)
+    book.has_marks = marks
+    return book

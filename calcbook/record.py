@@ -216,6 +216,35 @@ class Record:
                 write_whole(self.path, disk)
         self._disk, self._text, self._format = disk, text, FORMAT
 
+    def content(self) -> Form:
+        """Return a copy of all it says, in memory."""
+        return copy.deepcopy(
+            Form(self.workbook, self.mark, self.entries, self.schedules, self.carried)
+        )
+
+    def text(self) -> str:
+        """Return the text of the file that would say what it says now.
+
+        Raises RecordError where the changes cannot be put into the file as it is laid out.
+        """
+        return self._edited()
+
+    @property
+    def on_disk(self) -> bool:
+        """Whether there was a file when it was last read or written."""
+        return self._disk is not None
+
+    def moved(self) -> bool:
+        """Whether the file is no longer what was last read or written here.
+
+        Raises
+        ------
+        RecordError
+            The file cannot be read.
+        """
+        with in_plain_words(self.path, RecordError):
+            return read_bytes(self.path) != self._disk
+
     def is_confirmed(self, item: EntryRecord | RowRecord | CarriedRecord, job_number: str) -> bool:
         """Whether this very value or row was confirmed for this job; without a number: no."""
         found = item.confirmed

@@ -18,7 +18,7 @@ from calcbook.errors import CalcbookError, CarryError, InputError, JobError, nea
 from calcbook.fingerprint import item_digest
 from calcbook.inputs import Carried, Given, GivenRow, Inputs
 from calcbook.items import Carry, Schedule
-from calcbook.job import BASIS, Job
+from calcbook.job import BASIS, JOB_NUMBER, Job
 from calcbook.marks import gathered, gathered_rows
 from calcbook.versions import software
 from calcbook.workbook import Workbook, first_problem
@@ -71,6 +71,7 @@ class Runner:
         self.progress = progress or (lambda _text: None)
         self.books: dict[tuple[str, str | None], tuple[Workbook, Plain]] = {}
         self._running: list[str] = []
+        self._number: str | None = None
         self._declared: dict[tuple[Path, str, str], tuple[Workbook, list[Part]]] = {}
 
     # --- one workbook -----------------------------------------------------------------------
@@ -158,7 +159,7 @@ class Runner:
     def inputs(self, workbook: str, filling: Filling) -> Inputs:
         """Return what is typed for a filling: its record, and over it what is set instead."""
         record = self.record(workbook, filling)
-        number = self.job.number if self.job is not None else ""
+        number = self._job_number(workbook, record)
         typed = inputs_of(record, number) if record is not None else Inputs()
         for name, text in filling.sets.items():
             typed.entries[name] = Given(text, "set for this run")
@@ -167,6 +168,17 @@ class Runner:
         taken = record.carried if record is not None and not self.forget_taken else {}
         typed.carried = lambda origin: self.carried(origin, taken, typed)
         return typed
+
+    def _job_number(self, workbook: str, record: Record | None) -> str:
+        """Return the number values are confirmed for; the design basis knows its own first."""
+        if self.job is None:
+            return ""
+        if workbook == BASIS and record is not None:
+            entry = record.entries.get(JOB_NUMBER)
+            return entry.value if entry else ""
+        if self._number is None:
+            self._number = self.job.number
+        return self._number
 
     def record(self, workbook: str, filling: Filling) -> Record | None:
         """Return the record of a filling: the one given, or the job's; None outside a job."""

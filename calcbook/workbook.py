@@ -48,6 +48,11 @@ class Workbook:
         The filling, named as on the drawings, for a workbook with marks.
     signs
         The sign conventions: what is positive, by quantity ({'pressure': 'toward the surface'}).
+
+    Attributes
+    ----------
+    has_marks
+        It is meant for several fillings, one for each mark of the drawings.
     """
 
     engine = ENGINE
@@ -72,6 +77,7 @@ class Workbook:
         self.sections: list[Section] = []
         self.on_show: Callable[[Section], None] = _show_nothing
         self._cells: dict[str, list[Section]] = {}
+        self.has_marks = False
         self._stale = True
         self.cell = ""
 
@@ -136,6 +142,14 @@ class Workbook:
         other = copy.copy(self)
         other.mark, other.inputs = mark, inputs
         other.sections = list(self.sections)
+        return other
+
+    def up_to(self, title: str) -> Workbook:
+        """Return the same workbook with its sections up to this one, as its cell leaves it."""
+        other = self.filled(self.mark, self.inputs)
+        titles = [section.title for section in self.sections]
+        other.sections = self.sections[: titles.index(title) + 1] if title in titles else []
+        other._stale = True  # noqa: SLF001  of its own class
         return other
 
     # --- evaluating -------------------------------------------------------------------------

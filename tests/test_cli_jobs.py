@@ -121,6 +121,16 @@ def test_pack_says_what_moved(folder: Path, capsys: pytest.CaptureFixture[str]) 
     assert told not in printed(capsys, "pack", str(folder))
 
 
+def test_pack_of_one_workbook_alone(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """Its pages alone are written, nothing is noted as taken, and an unknown one is named."""
+    before = (folder / "loads.toml").read_bytes() if (folder / "loads.toml").exists() else b""
+    assert printed(capsys, "pack", ".", "--only", "loads").startswith("job-loads.pdf: ")
+    after = (folder / "loads.toml").read_bytes() if (folder / "loads.toml").exists() else b""
+    assert before == after
+    assert main(["pack", ".", "--only", "load"]) == 2
+    assert "did you mean 'loads'" in capsys.readouterr().err
+
+
 class Server:
     """Stands in for a JupyterLab that is interrupted once and then closed."""
 

@@ -15,8 +15,9 @@ from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress, Steps
+from calcbook.commands.saved import SavedOutputs, moved_on, moved_words
 from calcbook.diskfile import in_plain_words, write_whole
-from calcbook.errors import InputError, JobError
+from calcbook.errors import CalcbookError, InputError, JobError, near_match
 from calcbook.job import BASIS, Job, template_folder, templates
 from calcbook.record import EntryRecord
 from calcbook.run import Filling, Runner, all_items
@@ -100,6 +101,7 @@ def open_job(arguments: Namespace) -> int:
     if importlib.util.find_spec("jupyterlab") is None:
         raise JobError("JupyterLab is not installed",
                        hint="install it with: python -m pip install jupyterlab")  # fmt: skip
+    _prepare_outputs(job)
     folder = job.folder.resolve()
     words = [sys.executable, "-m", "jupyterlab", "--LabApp.news_url=None",
              f"--ServerApp.root_dir={folder}", *arguments.passed]  # fmt: skip
@@ -111,6 +113,28 @@ def open_job(arguments: Namespace) -> int:
                     raise JobError(f"JupyterLab stopped with status {status}",
                                    hint=_why_stopped(arguments))  # fmt: skip
                 return 0
+
+
+def _prepare_outputs(job: Job) -> None:
+    """Take dead views out of the saved outputs, and say which show what is no longer so."""
+    with Progress() as progress:
+        runner = Runner(job, progress)
+        for workbook in job.workbooks:
+            try:
+                _prepare(SavedOutputs(job.notebook(workbook)), job, runner, workbook)
+            except CalcbookError as error:  # JupyterLab is where it can be put right
+                print(f"{workbook}: its saved outputs cannot be compared: {error}")
+
+
+def _prepare(outputs: SavedOutputs, job: Job, runner: Runner, workbook: str) -> None:
+    outputs.drop_views()
+    try:
+        shown = moved_on(outputs, job, runner, workbook)
+        outputs.say_moved(shown)
+    finally:
+        outputs.save()
+    if shown:
+        print(f"{workbook}: {moved_words(shown)}")
 
 
 def _why_stopped(arguments: Namespace) -> str:
@@ -143,23 +167,41 @@ def demo(arguments: Namespace) -> int:
 def pack(arguments: Namespace) -> int:
     """Make the calculation package of a job."""
     job = Job.load(arguments.folder)
-    return _make_pack(job, arguments.output, Steps(sys.stderr), [])
+    only = _filling(job, arguments.only) if arguments.only else None
+    return _make_pack(job, arguments.output, Steps(sys.stderr), [], only)
 
 
-def _make_pack(job: Job, output: Path | None, steps: Steps, made: list[Path]) -> int:
-    """Write the pack of a job and say how it stands; returns the exit status.
+def _filling(job: Job, named: str) -> Filling:
+    """Return the filling that ``WORKBOOK[:MARK]`` names in a job; JobError where there is none."""
+    workbook, _, mark = named.partition(":")
+    marks = job.marks(workbook) if workbook in job.workbooks else ()
+    if workbook in job.workbooks and (mark in marks if marks else not mark):
+        return Filling(job.notebook(workbook), mark or None)
+    known = [f"{w}:{m}" if m else w for w, m in job.fillings()]
+    hint = near_match(named, known) or f"it has {', '.join(known)}"
+    raise JobError(f"the job has no '{named}' to print", hint=hint)
+
+
+def _make_pack(
+    job: Job, output: Path | None, steps: Steps, made: list[Path], only: Filling | None = None
+) -> int:
+    """Write the pack of a job, or of one filling, and say how it stands; returns the exit status.
 
     ``made`` receives the path of the file before it is written.
     """
-    from calcbook.pack.package import pack_job  # noqa: PLC0415  the pack's libraries are slow
+    from calcbook.pack import package  # noqa: PLC0415  the pack's libraries are slow
 
     def save(pdf: bytes) -> None:
-        path = output or job.folder / f"{_file_name(job)}.pdf"
+        path = output or job.folder / f"{_file_name(job)}{_part_name(only)}.pdf"
         made.append(path)
         with in_plain_words(path, JobError):
             write_whole(path, pdf)
 
-    packed = pack_job(job, steps, save)
+    if only is not None:
+        packed = package.pack_filling(job, only, steps)
+        save(packed.pdf)
+    else:
+        packed = package.pack_job(job, steps, save)
     steps.done()
     print(f"{made[-1]}: {len(_PAGE.findall(packed.pdf))} pages")
     if packed.moved:
@@ -167,6 +209,13 @@ def _make_pack(job: Job, output: Path | None, steps: Steps, made: list[Path]) ->
     for text in packed.moved:
         print(f"  {text}")
     return _stands(packed.statements)
+
+
+def _part_name(only: Filling | None) -> str:
+    """Return what the file of one filling adds to the name of the job's: '-wind-pressure'."""
+    if only is None:
+        return ""
+    return "-".join(["", only.notebook.stem, *([only.mark] if only.mark else [])])
 
 
 def _file_name(job: Job) -> str:

@@ -5,10 +5,12 @@
 from __future__ import annotations
 
 import sys
+from contextlib import suppress
 from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress
+from calcbook.commands.saved import SavedOutputs, moved_on, moved_words
 from calcbook.errors import CalcbookError
 from calcbook.job import BASIS, Job
 from calcbook.run import Runner
@@ -41,9 +43,18 @@ def status(arguments: Namespace) -> int:
             checked = checked and not review.not_satisfied(statement)
             troubles = review.troubles(statement)
             failed += [f"{title}: {text}" for text in troubles]
+        _print_moved(job, runner)
     for text in failed:
         print(f"calcbook: {text}", file=sys.stderr)
     return 2 if failed else 0 if checked else 1
+
+
+def _print_moved(job: Job, runner: Runner) -> None:
+    """Say which notebooks were saved with outputs that are no longer so."""
+    for workbook in job.workbooks:
+        with suppress(CalcbookError):  # what cannot be run was said already
+            if shown := moved_on(SavedOutputs(job.notebook(workbook)), job, runner, workbook):
+                print(f"{workbook}, saved outputs: {moved_words(shown)}")
 
 
 def summary(statement: Mapping[str, object]) -> str:

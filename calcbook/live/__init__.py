@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import atexit
 from typing import TYPE_CHECKING
 
 from calcbook.job import Job
@@ -21,8 +22,8 @@ _SESSIONS: dict[str, Session] = {}
 def open_live(name: str, title: str, signs: Mapping[str, str] | None = None) -> Workbook:
     """Open a workbook for a person in a notebook; its sections are shown as they are declared.
 
-    Opening it again, as running all cells does, starts a fresh session. Outside a job the record
-    in memory goes on, so that what was typed is not lost.
+    Opening it again, as running all cells does, starts a fresh session. What was typed outside a
+    job or could not be written, and what can be undone, goes on in it.
 
     Raises
     ------
@@ -32,17 +33,34 @@ def open_live(name: str, title: str, signs: Mapping[str, str] | None = None) -> 
         The record cannot be read.
     """
     former = _SESSIONS.get(name)
-    job = Job.find()
-    kept = former.record if former is not None and job is None and former.job is None else None
-    session = Session(name, title, signs, job=job, record=kept)
+    if former is not None:
+        former.settle()
+    session = Session(name, title, signs, job=Job.find(), former=former)
     if former is not None:
         former.retire()
     if not _SESSIONS:
         notebook.watch(_cell_started)
+        atexit.register(_settle)
     _SESSIONS[name] = session
+    if notebook.has_widgets():
+        _show_bar(session)
     return session.book
+
+
+def _show_bar(session: Session) -> None:
+    from calcbook.live.bar import Bar, shown  # noqa: PLC0415  widgets only where shown
+
+    bar = Bar(session)
+    session.bar = bar
+    notebook.publish_widget(shown(bar).model_id)
 
 
 def _cell_started() -> None:
     for session in _SESSIONS.values():
         session.begin_cell()
+
+
+def _settle() -> None:
+    """Write what is still to be written when the kernel is shut down."""
+    for session in _SESSIONS.values():
+        session.settle()

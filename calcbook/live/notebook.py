@@ -35,14 +35,40 @@ def path(workbook: str) -> Path:
     return Path(named) if named.endswith(".ipynb") else Path.cwd() / f"{workbook}.ipynb"
 
 
-def publish(bundle: Mapping[str, Any]) -> None:
-    """Show a bundle of forms of one output; plain Python prints its plain text."""
+def stamp(statement: Mapping[str, Any], section: str) -> dict[str, Any]:
+    """Return the metadata of an output: what it shows of which filling, and its fingerprint."""
+    return {"calcbook": {
+        "fingerprint": statement["fingerprint"], "mark": statement["mark"], "section": section,
+    }}  # fmt: skip
+
+
+def publish(bundle: Mapping[str, Any], metadata: Mapping[str, Any] | None = None) -> None:
+    """Show a bundle of forms of one output; plain Python prints its plain text.
+
+    A widget is an output of its own after the others, so that a file opened without its kernel
+    still shows the calculation; the widget takes the other one out of sight while it lives.
+    """
     if shell() is None:
         print(bundle["text/plain"])  # noqa: T201  there is nothing else to show it with
         return
     from IPython.display import publish_display_data  # noqa: PLC0415  see above
 
-    publish_display_data(dict(bundle))  # type: ignore[no-untyped-call]
+    still = {kind: form for kind, form in bundle.items() if kind != WIDGET}
+    publish_display_data(still, dict(metadata or {}))  # type: ignore[no-untyped-call]
+    if WIDGET in bundle:
+        publish_display_data({WIDGET: bundle[WIDGET]})  # type: ignore[no-untyped-call]
+
+
+def widget_view(model: str) -> dict[str, Any]:
+    """Return what shows a widget, by the id of its model."""
+    return {"version_major": 2, "version_minor": 0, "model_id": model}
+
+
+def publish_widget(model: str) -> None:
+    """Show a widget alone, as an output of its own."""
+    from IPython.display import publish_display_data  # noqa: PLC0415  see above
+
+    publish_display_data({WIDGET: widget_view(model)})  # type: ignore[no-untyped-call]
 
 
 def running() -> tuple[str, tuple[str, ...]]:

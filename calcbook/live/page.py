@@ -1,11 +1,11 @@
-"""A section as HTML with MathML: rows of a page of calculation."""
+"""The pieces of a section's rows as HTML with MathML."""
 
 from __future__ import annotations
 
 import base64
 import re
+from functools import lru_cache
 from html import escape
-from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from calcbook import figures, formula, typeset
@@ -26,11 +26,6 @@ _CLAUSE = re.compile(r"(?<![^\s(])[\w.]*\d-\d\w*")
 _WHOLE = r'<span class="cb-whole">\g<0></span>'
 
 
-def style() -> str:
-    """Return the style sheet of a view, in an element of its own."""
-    return f"<style>{Path(__file__).with_name('page.css').read_text(encoding='utf-8')}</style>"
-
-
 def words(content: Words) -> str:
     """Return running text as HTML."""
     return "".join(map(_run, content))
@@ -43,12 +38,24 @@ def _run(run: Run) -> str:
         case parts.Strong(text):
             return f"<strong>{escape(text)}</strong>"
         case parts.Symbol(name):
-            return math(typeset.symbol(name, "mathml"))
+            return symbol(name)
         case parts.Relation(text):
-            return math(typeset.expression(formula.parse(text), "mathml"))
+            return relation(text)
         case parts.Amount(text, unit, typed):
             shown = escape(amount_text(text, unit))
             return f'<span class="cb-typed">{shown}</span>' if typed else shown
+
+
+@lru_cache(maxsize=4096)
+def symbol(name: str) -> str:
+    """Return a name as a formula in running text."""
+    return math(typeset.symbol(name, "mathml"))
+
+
+@lru_cache(maxsize=4096)
+def relation(text: str) -> str:
+    """Return a formula as declared, in running text."""
+    return math(typeset.expression(formula.parse(text), "mathml"))
 
 
 def math(code: str) -> str:
@@ -56,31 +63,19 @@ def math(code: str) -> str:
     return f'<math><mstyle displaystyle="true">{code}</mstyle></math>'
 
 
-def row(block: Block, statement: Plain) -> str:
-    """Return a block as one row: number, words, body, margin."""
-    body = _body(block, statement)
-    if block.kind in WIDE or (block.kind == "idle" and not block.says):
-        return _wide_row(block, body)
-    kind = "entry" if block.kind in GIVEN else block.kind
-    classes = f"cb-row cb-{kind}{' cb-within' if block.within else ''}"
-    return (
-        f'<div class="{classes}"><div class="cb-no">{escape(block.number)}</div>'
-        f'<div class="cb-words">{words(block.words)}</div>'
-        f'<div class="cb-body">{body}</div>{margin(block)}</div>'
-    )
+def pieces(block: Block) -> dict[str, str]:
+    """Return a block as the pieces of a row: its classes, number, words, body, margin.
 
-
-def _wide_row(block: Block, body: str) -> str:
-    kind = "cb-table-item" if block.kind == "table" else f"cb-{block.kind}"
-    return (
-        f'<div class="cb-row cb-wide {kind}"><div class="cb-no">{escape(block.number)}</div>'
-        f'<div class="cb-words">{words(block.words)}{body}</div>{margin(block)}</div>'
-    )
-
-
-def margin(block: Block) -> str:
-    """Return the margin of a row: clause and notes, small."""
-    return f'<div class="cb-margin">{notes(block.remarks)}</div>'
+    A figure's picture is not drawn here: it takes longest (``figure``).
+    """
+    wide = block.kind in WIDE or (block.kind == "idle" and not block.says)
+    kind = {"table": "table-item", "carried": "entry cb-carried"}.get(block.kind, block.kind)
+    classes = ["cb-row", f"cb-{kind}", *(["cb-wide"] if wide else [])]
+    classes += ["cb-within"] if block.within else []
+    return {
+        "cls": " ".join(classes), "no": escape(block.number), "words": words(block.words),
+        "body": _body(block), "margin": notes(block.remarks),
+    }  # fmt: skip
 
 
 def notes(remarks: tuple[Words, ...]) -> str:
@@ -88,20 +83,18 @@ def notes(remarks: tuple[Words, ...]) -> str:
     return "".join(f"<div>{_CLAUSE.sub(_WHOLE, words(note))}</div>" for note in remarks)
 
 
-def _body(block: Block, statement: Plain) -> str:
-    pieces = [equation(block.equation)] if block.equation else []
+def _body(block: Block) -> str:
+    found = [equation(block.equation)] if block.equation else []
     if block.grid:
-        pieces.append(grid(block.grid))
+        found.append(grid(block.grid))
     if block.kind == "check":
         state = {True: "held", False: "failed", None: "open"}[block.item["satisfied"]]
-        pieces += [f'<div class="cb-{state}">{words(line)}</div>' for line in block.says]
+        found += [f'<div class="cb-{state}">{words(line)}</div>' for line in block.says]
     else:
         kind = "cb-value" if block.kind in GIVEN else "cb-says"
-        pieces += [f'<div class="{kind}">{words(line)}</div>' for line in block.says]
-    if block.kind == "figure":
-        pieces.append(figure(statement, block.item))
-    pieces += [trouble(text) for text in block.troubles]
-    return "".join(pieces)
+        found += [f'<div class="{kind}">{words(line)}</div>' for line in block.says]
+    found += [trouble(text) for text in block.troubles]
+    return "".join(found)
 
 
 def trouble(text: str) -> str:
@@ -125,7 +118,7 @@ def equation(shown: Equation) -> str:
     pieces = [f"{name}<mo>=</mo>{first}", *(f"<mo>=</mo>{part}" for part in rest)]
     spans = [f'<span class="cb-part">{math(f"<mrow>{piece}</mrow>")}</span>' for piece in pieces]
     if shown.result:
-        last = shown.parts("plain")[-1]
+        last = typeset.number(shown.result.text, shown.result.unit, "plain")
         lead = f'<span class="cb-part">{math(f"<mrow>{name}</mrow>")}</span> ' if not rest else ""
         spans[-1] = f'{lead}<span class="cb-part cb-result">= <b>{escape(last)}</b></span>'
     spoken = typeset.spoken(shown.name, shown.formula, shown.values, shown.result)

@@ -13,6 +13,8 @@ if TYPE_CHECKING:
 
 APPLY = "Run all cells again to apply."
 LEFT_OVER = "The cell that declared this section was deleted or changed; run all cells again."
+USED_NOW = "the results here use the value as it is now"
+SILENT = "The kernel has not answered: what was typed last is taken when it does."
 
 
 def initials(confirmed: str) -> str:

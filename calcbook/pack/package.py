@@ -7,23 +7,22 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CarryError
 from calcbook.figures import draw
-from calcbook.fingerprint import item_digest
 from calcbook.job import BASIS, Job
 from calcbook.pack.compile import make_pack
 from calcbook.pack.cover import Cover
-from calcbook.record import CarriedRecord, update
+from calcbook.record import update
 from calcbook.run import Filling, Runner, all_items, carries
-from calcbook.wording import counted
+from calcbook.taking import taken_now
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Iterator, Mapping
     from pathlib import Path
 
-    from calcbook.record import Record
+    from calcbook.record import CarriedRecord, Record
     from calcbook.workbook import Workbook
 
 Statement = dict[str, Any]
-Taken = dict[str, CarriedRecord]
+Taken = dict[str, "CarriedRecord"]
 Holder = tuple[str, str | None]
 
 
@@ -78,10 +77,23 @@ def pack_notebook(path: Path) -> bytes:
     job = Job.find(path.resolve().parent)
     if job is not None and path.stem not in job.workbooks:
         job = None
-    runner = Runner(job)
-    _, statement = runner.run(Filling(path))
-    title = f"Calculation: {statement['title']}"
-    return make_pack(cover_of(runner, job), [statement], draw, title=title)
+    return pack_filling(job, Filling(path)).pdf
+
+
+def pack_filling(
+    job: Job | None, filling: Filling, progress: Callable[[str], None] | None = None
+) -> Packed:
+    """Return the pages of one filling of a workbook; nothing is noted as taken.
+
+    Raises CalcbookError as ``pack_job`` does.
+    """
+    runner = Runner(job, progress)
+    _, statement = runner.run(filling)
+    cover = cover_of(runner, job)
+    if progress is not None:
+        progress("pages")
+    pdf = make_pack(cover, [statement], draw, title=f"Calculation: {statement['title']}")
+    return Packed(pdf, (statement,), ())
 
 
 def cover_of(runner: Runner, job: Job | None) -> Cover:
@@ -149,16 +161,5 @@ def _carried_now(runner: Runner, book: Workbook) -> Taken:
         found = runner.carried(origin, {}, book.inputs)
         if found is None or found.item is None:
             raise CarryError(f"{workbook} has no result '{name}'", where=book.name)
-        now[origin] = _taken(origin, found.item)
+        now[origin] = taken_now(origin, found.item)
     return now
-
-
-def _taken(origin: str, item: Mapping[str, Any]) -> CarriedRecord:
-    value = item.get("value") or {}
-    text = f"{value.get('text', '')} {value.get('unit', '')}".strip()
-    rows = counted(len(item["rows"]), "row") if "rows" in item else ""
-    return CarriedRecord(
-        value=text or str(item.get("option") or item.get("text") or rows),
-        si=value.get("si"), option=str(item.get("option") or ""), origin=origin,
-        sign=str(item.get("sign") or ""), fingerprint=item_digest(item),
-    )  # fmt: skip

@@ -21,7 +21,7 @@ class Kernel:
     def __init__(self, monkeypatch: pytest.MonkeyPatch) -> None:
         self.cell, self.deleted = "a", ()
         monkeypatch.setattr(kernel, "running", lambda: (self.cell, self.deleted))
-        monkeypatch.setattr(kernel, "publish", lambda _bundle: None)
+        monkeypatch.setattr(kernel, "publish", lambda *_: None)
         self.session = Session("cells", "Cells")
 
     def run(self, cell: str, title: str, formula: str, *, deleted: tuple[str, ...] = ()) -> None:

@@ -169,9 +169,9 @@ def test_ticking_confirms_the_value_that_stands(wind: Session) -> None:
 
 
 def test_without_initials_nothing_is_confirmed(tmp_path: Path) -> None:
-    """Typed values are kept unconfirmed, the view says why, and a tick is refused."""
+    """Typed values are kept unconfirmed, the session says why, and a tick is refused."""
     session = opened(WIND, make_job(tmp_path / "job", signed=False))
-    assert "no job number and no initials" in text(session, "Site")
+    assert "no job number and no initials" in session.unsigned
     field(session, "Site", SPEED).value = "72"
     assert session.job.record("wind").entries["V"].confirmed is None
     mark = marks(session, "Site")[0]
@@ -255,42 +255,44 @@ def test_a_change_elsewhere_of_another_entry_is_kept(wind: Session, job: Job) ->
 
 
 def test_a_change_elsewhere_of_the_same_entry_is_not_overwritten(wind: Session, job: Job) -> None:
-    """What another kernel typed stands; the later one is told, and may type again."""
+    """What another kernel typed stands on disk, what was typed here in memory; one is asked."""
     other = opened(WIND, job)
     field(other, "Site", SPEED).value = "90"
     speed = field(wind, "Site", SPEED)
     speed.value = "81"
     assert job.record("wind").entries["V"].value == "90 m/s"
-    assert "changed elsewhere meanwhile" in text(wind, "Site")
-    assert speed.value == "90"
-    speed.value = "82"
-    assert job.record("wind").entries["V"].value == "82 m/s"
+    assert speed.value == "81"
+    assert "Here: 81 m/s. On disk: 90 m/s." in wind.asks[0]["text"]
 
 
-def test_a_record_that_cannot_be_written_keeps_the_last_good_value(
+def test_a_record_that_cannot_be_written_keeps_the_typed_value(
     wind: Session, monkeypatch: pytest.MonkeyPatch
 ) -> None:
-    """A full disk is told beside the field; screen and record keep the former value."""
+    """A full disk is told; what was typed stays in force, and the next change writes it."""
 
     def full(*_: object, **__: object) -> None:
         raise OSError(28, "No space left on device")
 
-    monkeypatch.setattr("calcbook.diskfile.os.replace", full)
-    before = result(wind, "q")
-    field(wind, "Site", SPEED).value = "81"
-    assert "Not taken" in text(wind, "Site")
-    assert result(wind, "q") == before
-    monkeypatch.undo()
-    field(wind, "Site", SPEED).value = "82"
-    assert result(wind, "q") == pytest.approx(0.613 * 82**2)
+    with monkeypatch.context() as patch:
+        patch.setattr("os.replace", full)
+        patch.setattr("os.write", full)
+        field(wind, "Site", SPEED).value = "81"
+    assert "Not taken" not in text(wind, "Site")
+    assert result(wind, "q") == pytest.approx(0.613 * 81**2)
+    assert "disk is full" in wind.unwritten
+    field(wind, "Site", "Exposure").value = "B"
+    assert wind.unwritten == ""
+    assert wind.job.record("wind").entries["V"].value == "81 m/s"
 
 
 def test_a_damaged_record_is_told_and_left_alone(wind: Session, job: Job) -> None:
     """A record broken on disk while open is reported with its place and not overwritten."""
     path = job.record_path("wind")
     path.write_text("format = 1\nworkbook = \n", encoding="utf-8")
-    field(wind, "Site", SPEED).value = "81"
-    assert "Not taken" in text(wind, "Site")
+    speed = field(wind, "Site", SPEED)
+    speed.value = "81"
+    assert speed.value == "81"
+    assert "line 2" in wind.unwritten
     assert path.read_text(encoding="utf-8") == "format = 1\nworkbook = \n"
 
 

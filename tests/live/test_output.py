@@ -148,7 +148,7 @@ def test_a_cell_shows_one_bundle_without_widgets_where_no_one_looks(
     """Without a front end the bundle has Markdown and plain text, and no widget."""
     monkeypatch.chdir(make_job(tmp_path / "job").folder)
     shown: list[dict[str, Any]] = []
-    monkeypatch.setattr(notebook, "publish", shown.append)
+    monkeypatch.setattr(notebook, "publish", lambda bundle, _metadata: shown.append(bundle))
     book = open_live("wind", "Wind")
     with book.section("Site") as s:
         s.entry("V", "Basic wind speed", "70 m/s", unit="speed")
@@ -160,7 +160,7 @@ def test_a_front_end_gets_the_widget_too(tmp_path: Path, monkeypatch: pytest.Mon
     """With a front end the same bundle also names the view."""
     monkeypatch.chdir(make_job(tmp_path / "job").folder)
     shown: list[dict[str, Any]] = []
-    monkeypatch.setattr(notebook, "publish", shown.append)
+    monkeypatch.setattr(notebook, "publish", lambda bundle, _metadata: shown.append(bundle))
     monkeypatch.setattr(notebook, "has_widgets", lambda: True)
     book = open_live("wind", "Wind")
     with book.section("Site") as s:
