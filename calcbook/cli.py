@@ -95,7 +95,8 @@ COMMANDS = {
         _FOLDER,
         ("--output", {"metavar": "FILE", "type": Path,
                       "help": "where to (default: FOLDER/NUMBER-REVISION.pdf)"}),
-        ("--only", {"metavar": "WORKBOOK[:MARK]", "help": "print it alone; MARK is one of several"}),
+        ("--only", {"metavar": "WORKBOOK[:MARK]",
+                    "help": "print it alone; MARK is one of several"}),
     )),
 }  # fmt: skip
 
