@@ -10,7 +10,7 @@ import pytest
 from calcbook.cases import evaluate
 from calcbook.commands.common import read_rows
 from calcbook.errors import InputError
-from calcbook.live.rows import editable
+from calcbook.live.gridrow import editable
 from calcbook.standing import unconfirmed_rows
 from calcbook.statement import fingerprint
 

@@ -114,7 +114,7 @@ def _pattern(column: Column) -> tuple[object, ...] | None:
         return None
     number = found[0]
     own = re.compile(
-        rf"(?<=[_A-Za-z]){number}(?![0-9A-Za-z])|(?<=== ){number}\b|(?<='){number}(?=')"
+        rf"(?<=[_A-Za-z]){number}(?![0-9A-Za-z+-])|(?<=== ){number}\b|(?<='){number}(?=')"
     )
     cases = [
         (own.sub("#", case["when"]), own.sub("#", case["formula"]), case.get("holds"))

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import shutil
 from typing import TYPE_CHECKING
 
 import pytest
@@ -11,11 +12,13 @@ from hypothesis import strategies as st
 from sheets import CODES, rows_of
 from trusses import BOOK, TABLES, gable, howe, king_post, point, truss
 
-from calcbook.job import template_folder
-from calcbook.run import find_item
+from calcbook.job import Job, template_folder, templates
+from calcbook.record import RowRecord
+from calcbook.run import Runner, find_item
 
 if TYPE_CHECKING:
     from collections.abc import Callable
+    from pathlib import Path
 
     from sheets import Sheet
 
@@ -250,8 +253,50 @@ def test_feet_and_kips_give_the_same_forces(fill: Fill) -> None:
     assert again.column("case_forces", "N_L") == pytest.approx(metres.column("case_forces", "N_L"))
 
 
-def test_the_demo_truss_is_the_template(run: Callable[..., Sheet]) -> None:
-    """The demo job has a filled truss whose notebook is the template's."""
-    demo = template_folder() / "demo"
-    assert (demo / f"{BOOK}.T1.toml").is_file()
-    assert all(run(BOOK).checks().values())
+# --- the demo job -------------------------------------------------------------------------------
+
+
+@pytest.fixture
+def job(tmp_path: Path) -> Job:
+    """Return the demo job with the notebooks of the templates, in a folder of its own."""
+    for path in (template_folder() / "demo").glob("*.toml"):
+        shutil.copy(path, tmp_path / path.name)
+    for name, path in templates().items():
+        shutil.copy(path, tmp_path / f"{name}.ipynb")
+    return Job.load(tmp_path)
+
+
+def test_the_truss_of_the_demo_job_closes(job: Job) -> None:
+    """Its checks are satisfied, all of it is confirmed, and wind comes from the wind workbook."""
+    statement = Runner(job).statement(BOOK, "T1")
+    counts = statement["counts"]
+    assert (counts["not_satisfied"], counts["undecided"], counts["problems"]) == (0, 0, 0)
+    assert counts["unconfirmed"] == 0
+    zones = find_item(statement, "zones_Y")
+    source = find_item(Runner(job).statement("wind-pressure"), "roof_Y")
+    assert zones is not None
+    assert source is not None
+    wanted = next(c["si"] for c in source["columns"] if c["name"] == "p_Y1p")
+    assert next(c["si"] for c in zones["columns"] if c["name"] == "p_Y1p") == wanted
+
+
+def test_a_column_takes_the_reaction_of_a_truss_by_its_mark(job: Job) -> None:
+    """What T1 brings at L0 reaches the base of a column that lists it, once, with its uplift."""
+    source = find_item(Runner(job).statement(BOOK, "T1"), "reactions")
+    assert source is not None
+    brought = {c["name"]: c["si"][0] for c in source["columns"]}
+    column = "column-accumulation"
+    base = Runner(job).statement(column, "C-7")
+    cells = {"brings": "truss", "bearing_of": "T1 L0", "bears_at": "Roof", "n_b": "1",
+             "live_as": "unreduced"}  # fmt: skip
+    record = job.record(column, "C-7")
+    record.change(schedules={"bearings": [RowRecord("T1", cells)]})
+    record.save()
+    after = Runner(Job.load(job.folder)).statement(column, "C-7")
+    dead = [find_item(one, "N_D")["value"]["si"] for one in (base, after)]  # type: ignore[index]
+    assert dead[1] - dead[0] == pytest.approx(brought["R_D"])
+    borne = find_item(after, "borne")
+    assert borne is not None
+    uplift = next(c["si"] for c in borne["columns"] if c["name"] == "B_Wt")
+    assert uplift == [brought["R_Wt"]]
+    assert brought["R_Wt"] < -50e3
