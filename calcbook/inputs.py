@@ -223,16 +223,22 @@ class Reader:
         if not entered:
             return [GivenRow(key, {}, confirmed="carried") for key in keys]
         if typed is None:
-            cells = dict(item.default)  # the template's rows serve, unconfirmed, until typed
+            # what the template's rows enter here serves, unconfirmed, until typed
+            own = {c.name for c in item.columns if not isinstance(c, Carry)}
+            cells = {
+                key: {name: text for name, text in row.items() if name in own}
+                for key, row in item.default
+            }
             return [GivenRow(key, cells.get(key, {}), item.source) for key in keys]
         by_key = {row.key: row for row in typed}
         missing = [key for key in keys if key not in by_key]
         extra = [key for key in by_key if key not in keys]
         if missing or extra:
             self.found.problems[item.name] = (
-                f"row '{missing[0]}' of {carried.origin} is missing here"
+                f"row '{missing[0]}' of {carried.origin} is missing here: enter its cells"
                 if missing
-                else f"row '{extra[0]}' is not in {carried.origin}"
+                else f"row '{extra[0]}' is not in {carried.origin}: it goes with the next change "
+                f"of {item.name}"
             )
         return [by_key.get(key, GivenRow(key, {})) for key in keys]
 

@@ -288,6 +288,17 @@ class Workbook:
         return value if isinstance(value, str) else value.text
 
 
+def own_columns(book: Workbook, name: str) -> dict[str, Item]:
+    """Return the columns of a schedule that are filled in here, as its rows stand now.
+
+    Where they are brought forward, the columns that come with them are filled in at their source.
+    """
+    columns = entered_columns(book.schedule_item(name))
+    if name not in book.readings.carried:
+        return columns
+    return {n: item for n, item in columns.items() if not isinstance(item, Carry)}
+
+
 def entered_columns(schedule: Schedule) -> dict[str, Item]:
     """Return the columns of a schedule the engineer fills in, by name."""
     kinds = (Entry, Choice, Text, Carry)

@@ -17,7 +17,7 @@ from calcbook.items import Carry, Choice, Entry
 from calcbook.job import Job, find_notebook
 from calcbook.record import check_mark
 from calcbook.units import DIMENSIONLESS
-from calcbook.workbook import entered_columns
+from calcbook.workbook import entered_columns, own_columns
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -74,8 +74,13 @@ def assignments(texts: Sequence[str]) -> dict[str, str]:
     return found
 
 
-def read_rows(texts: Sequence[str], book: Workbook) -> dict[str, list[RowRecord]]:
+def read_rows(
+    texts: Sequence[str], book: Workbook, *, beside: bool = False
+) -> dict[str, list[RowRecord]]:
     """Read the rows of ``SCHEDULE=FILE.csv`` texts.
+
+    Of rows that are brought forward a file may give only what is entered here; with ``beside`` it
+    gives nothing else.
 
     Raises
     ------
@@ -100,16 +105,22 @@ def read_rows(texts: Sequence[str], book: Workbook) -> dict[str, list[RowRecord]
                 f"'{schedule.shaped.option}'", where=book.name,
                 hint=f"choose otherwise beside them: {other}={_others(book, schedule.shaped)}",
             )  # fmt: skip
+        own = own_columns(book, name)
         entered = {
-            column: item for column, item in entered_columns(schedule).items()
+            column: item
+            for column, item in (own if beside else entered_columns(schedule)).items()
             if not item.codes or book.code.name in item.codes
-        }  # fmt: skip
+        }
         found[name] = as_rows(
             read_table(Path(file)),
             {column: needs_unit(item) for column, item in entered.items()},
             f"{book.name}, schedule {name}",
             # where it applies after all, each row says that it has no value
-            [c for c, item in entered.items() if item.when and not getattr(item, "value", "")],
+            [
+                c
+                for c, item in entered.items()
+                if c not in own or (item.when and not getattr(item, "value", ""))
+            ],
         )
     return found
 

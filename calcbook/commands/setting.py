@@ -23,6 +23,7 @@ from calcbook.job import BASIS, JOB_NUMBER
 from calcbook.record import Confirmation, EntryRecord, Record, RowRecord, row_digest
 from calcbook.run import Filling, Runner, carries
 from calcbook.wording import counted
+from calcbook.workbook import own_columns
 
 if TYPE_CHECKING:
     from argparse import Namespace
@@ -127,7 +128,7 @@ def _attempt(wish: Wish, progress: Progress) -> None:
     runner = Runner(job, progress)
     book, statement = runner.run(filling)
     _refuse_carried(runner, book, [*wish.sets, *assignments(wish.files)])
-    rows = read_rows(wish.files, book)
+    rows = read_rows(wish.files, book, beside=True)
     change = _everything(book)
     if wish.sets or rows:
         change = Change(
@@ -151,9 +152,15 @@ def _attempt(wish: Wish, progress: Progress) -> None:
 def _refuse_carried(runner: Runner, book: Workbook, names: Sequence[str]) -> None:
     origins = carries(book)
     for name in names:
+        if any(name == item.name and own_columns(book, name) for item in _schedules(book)):
+            continue  # its rows come from there, and some columns are entered here
         hint = owner_hint(runner, origins.get(name, ""))
         if hint:
             raise InputError(f"{name} is carried from {origins[name]}", where=book.name, hint=hint)
+
+
+def _schedules(book: Workbook) -> list[Schedule]:
+    return [item for item in book.items() if isinstance(item, Schedule)]
 
 
 def _entry(record: Record, name: str, text: str) -> EntryRecord:
@@ -215,8 +222,9 @@ def _has_rows_of_its_own(bound: Bound, book: Workbook) -> bool:
         for c in bound.columns
         if applies.get(c.number, True)
     )
-    elsewhere = {*found.carried, *found.shaped}
-    entered = schedule.name in found.given_rows and schedule.name not in elsewhere
+    brought = schedule.name in found.carried and not own_columns(book, schedule.name)
+    elsewhere = brought or schedule.name in found.shaped or schedule.name in found.problems
+    entered = schedule.name in found.given_rows and not elsewhere
     return entered and not schedule.fixed and not bad
 
 

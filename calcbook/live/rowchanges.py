@@ -10,7 +10,7 @@ from calcbook.live import pasting
 from calcbook.live.changes import Changing
 from calcbook.record import RowRecord, row_digest
 from calcbook.wording import counted
-from calcbook.workbook import entered_columns
+from calcbook.workbook import own_columns
 
 if TYPE_CHECKING:
     from collections.abc import Mapping, Sequence
@@ -130,12 +130,21 @@ class RowChanging(Changing):
     # --- how it is done ---------------------------------------------------------------------
 
     def _rows(self, schedule: str) -> Rows:
-        """Return a copy of the rows in force: the record's, else the template's."""
-        self.book.schedule_item(schedule)
-        if schedule in self.record.schedules:
-            return copy.deepcopy(self.record.schedules[schedule])
+        """Return a copy of the rows in force: the record's, else the template's.
+
+        Of rows brought forward it is those of the source, each with what is entered here for it.
+        """
+        own = own_columns(self.book, schedule)
         given = self.book.readings.given_rows.get(schedule, [])
-        return [RowRecord(r.key, dict(r.cells), r.source) for r in given]
+        rows = copy.deepcopy(self.record.schedules.get(schedule))
+        if rows is not None and schedule not in self.book.readings.carried:
+            return rows
+        kept = {row.key: row for row in rows or ()}
+        return [
+            kept.get(r.key)
+            or RowRecord(r.key, {n: t for n, t in r.cells.items() if n in own}, r.source)
+            for r in given
+        ]
 
     def _standing(self, rows: Rows) -> set[str]:
         """Return the keys of the rows that are confirmed."""
@@ -151,7 +160,7 @@ class RowChanging(Changing):
         Each is confirmed if it stood confirmed, and when all of it was typed here.
         """
         signer = self.signer()
-        every = set(entered_columns(self.book.schedule_item(schedule)))
+        every = set(own_columns(self.book, schedule))
         so_far = {
             key: self._typed.get((schedule, key), set()) | columns
             for key, columns in typed.items()
