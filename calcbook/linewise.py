@@ -36,6 +36,8 @@ if TYPE_CHECKING:
     from calcbook.program import Program, Results, Step, Value
     from calcbook.tree import Node
 
+_SHOWN = 8  # keys named where the one looked for is not there
+
 
 class LineByLine:
     """Evaluates the steps of a program in order; what cannot be computed stops nothing else.
@@ -293,7 +295,9 @@ class LineByLine:
             home = ", ".join(names(keys))
             known = texts(self.found.values.get(home))
             if one not in known and call.function == "lookup":
-                return f"there is no row '{one}' in {home}"
+                some = ", ".join(known[:_SHOWN]) + (", ..." if len(known) > _SHOWN else "")
+                empty = f"nothing is entered to look up in {home}, which has {some}"
+                return f"there is no row '{one}' in {home}" if one else empty
             for name in names(column):
                 reasons = self.found.row_problems.get(name, ())
                 if any(r and known[n] == one for n, r in enumerate(reasons)):

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import time
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -239,16 +238,6 @@ def run(workbook: Workbook, name: str, changes: dict[str, float]) -> float:
     found = workbook.program.evaluate(values, readings.rows, {}, {}).values[name]
     assert isinstance(found, float)
     return found
-
-
-def test_a_study_takes_less_than_a_second(demo: Callable[..., Workbook]) -> None:
-    """The result with the most entries of the demo job is studied while one looks."""
-    column = demo("column-accumulation", "C-3")
-    studies.sensitivity(column, "N_u")
-    start = time.perf_counter()
-    found = studies.sensitivity(column, "N_u")
-    assert time.perf_counter() - start < 1.0
-    assert len(found.effects) == 25
 
 
 def test_templates_without_a_job() -> None:

@@ -105,7 +105,8 @@ def open_job(arguments: Namespace) -> int:
     folder = job.folder.resolve()
     words = [sys.executable, "-m", "jupyterlab", "--LabApp.news_url=None",
              f"--ServerApp.root_dir={folder}", *arguments.passed]  # fmt: skip
-    print(f"opening {folder} in JupyterLab; press Ctrl-C here to close it", flush=True)
+    print(f"opening {folder} in JupyterLab; press Ctrl-C here to close it")
+    print("in a workbook: Run, Run All Cells; then type into its fields", flush=True)
     with subprocess.Popen(words, env={**os.environ, "CALCBOOK_JOB": str(folder)}) as server:  # noqa: S603  our own interpreter
         while True:
             with suppress(KeyboardInterrupt):  # JupyterLab gets it as well, and asks

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import copy
+import re
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
@@ -43,6 +44,15 @@ class Target:
             and not (self.brought and isinstance(entered[c["name"]], Carry))
         }  # fmt: skip
 
+        told = {c["name"]: {c["name"], c["meaning"]} for c in item["columns"]} | {"": {item["key"]}}
+        self.headings = {name: {text.casefold() for text in words} for name, words in told.items()}
+
+    def is_heading(self, order: Sequence[str], line: Sequence[str]) -> bool:
+        """Whether a line has the headings of its columns, with or without a unit in brackets."""
+        bare = [re.sub(r"\s*\([^()]*\)$", "", cell).casefold() for cell in line]
+        pairs = zip(order, bare, strict=False)
+        return all(text in self.headings[column] for column, text in pairs)
+
     def order(self, first: str, width: int) -> list[str]:
         """Return the columns a block of this width fills from the first on; '' is the key."""
         every = [*([] if self.brought else [""]), *self.columns]
@@ -80,10 +90,13 @@ def paste(
 ) -> Pasted:
     """Put a block into rows, from (key, column) on; the rows are changed in place.
 
+    A first line with the headings of its columns, as a spreadsheet has it, is left out.
     Raises InputError, naming the first bad cell; the rows are then as they were.
     """
     lines = _trimmed(block)
     order = target.order(at[1], max(map(len, lines), default=0))
+    if len(lines) > 1 and target.is_heading(order, lines[0]):
+        lines = lines[1:]
     start = next((n for n, row in enumerate(rows) if row.key == at[0]), None)
     if start is None:
         raise InputError(f"there is no row '{at[0]}' any more", hint="run this cell again")

@@ -104,6 +104,8 @@ def _remarks(text: str) -> str:
     """Return what else the command said that the engineer must know."""
     wrong = text.count("NOT SATISFIED")
     moved = text.count(" -> ")
+    waiting = sum(line.count(", ") + 1 for line in text.splitlines() if ": unconfirmed: " in line)
     told = [f"{wrong} not satisfied"] if wrong else []
+    told += [f"{waiting} not confirmed"] if waiting else []
     told += [f"{moved} carried values had moved and are now taken"] if moved else []
     return f" ({'; '.join(told)})" if told else ""

@@ -99,7 +99,7 @@ def _answer(found: Needed, one: Answer) -> dict[str, Any]:
     exact = f"{name} = {one.text} gives {one.result}"
     rounded = f"; {name} = {one.rounded} gives {one.rounded_result}{held}" if one.rounded else ""
     how = one.formula and f"{name} = {one.formula}{f', with {one.given}' if one.given else ''}"
-    way = how or f"between {one.interval}, refined to {one.tolerance}"
+    way = how or f"between {one.interval}"
     uses = [] if found.entry.home else [text for text in (one.rounded, one.text) if text]
     stretch = f"; {one.stretch}" if one.stretch else ""
     return {
@@ -116,7 +116,10 @@ def _told(found: Needed) -> Iterator[str]:
     elif found.verdict == "none":
         nearest = found.nearest
         near = f" The nearest: {nearest.result}, with {nearest.entry}." if nearest else ""
-        yield f"No value of {found.entry.name} gives {found.target}.{near}"
+        if found.result.which == "ratio" and nearest and float(nearest.result) < 1:
+            yield f"The check is satisfied at every value searched.{near}"
+        else:
+            yield f"No value of {found.entry.name} gives {found.target}.{near}"
     elif found.verdict == "every":
         yield f"Every value of {found.entry.name} gives {found.target}."
     yield f"Searched: {found.searched}."

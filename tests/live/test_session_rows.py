@@ -148,3 +148,10 @@ def test_a_block_may_not_be_longer_than_rows_brought_forward(tmp_path: Path) -> 
         session.paste("floors", "Level 2", "z", [["4"], ["2"]])
     with pytest.raises(InputError, match="not typed here"):
         session.paste("floors", "Level 2", "", [["Level 1"]])
+
+
+def test_a_line_of_headings_in_a_block_is_left_out(wind: Session) -> None:
+    """A block copied with its first line pastes what stands below it."""
+    wind.paste("floors", "Roof", "", [["Level", "z (m)"], ["Roof", "8.0"], ["Level 2", "4.0"]])
+    assert [row.key for row in wind.record.schedules["floors"]] == ["Roof", "Level 2"]
+    assert wind.record.schedules["floors"][0].cells["z"] == "8.0 m"
