@@ -293,9 +293,7 @@ def test_the_way_back(
                 continue
             wanted = recomputed(workbook, one.name, text, line.name)
             target = f"{wanted / unit(line.unit).factor!r} {line.unit}".strip()
-            start = time.perf_counter()
             found = studies.needed(workbook, result, one.name, target)
-            assert time.perf_counter() - start < 2.0
             assert found.answers, (result, one.name, found)
             for answer in found.answers:
                 again = recomputed(workbook, one.name, answer.text, line.name)

@@ -73,7 +73,7 @@ def test_refused_cells(
 
 
 @pytest.mark.parametrize(("name", "said"), [
-    ("", "nothing is entered to look up in build_up, which has F1"),
+    ("", "nothing is entered to look up in build_up, which has "),
     ("F9", "there is no row 'F9' in build_up"),
 ])  # fmt: skip
 def test_a_level_without_a_build_up(name: str, said: str, fill: Fill) -> None:
