@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import copy
 from typing import TYPE_CHECKING
 
 from calcbook.errors import InputError
 from calcbook.live import pasting
 from calcbook.live.changes import Changing
+from calcbook.live.merging import copied
 from calcbook.record import RowRecord, row_digest
 from calcbook.wording import counted
 from calcbook.workbook import entered_columns
@@ -133,7 +133,7 @@ class RowChanging(Changing):
         """Return a copy of the rows in force: the record's, else the template's."""
         self.book.schedule_item(schedule)
         if schedule in self.record.schedules:
-            return copy.deepcopy(self.record.schedules[schedule])
+            return list(copied(self.record.schedules[schedule]))
         given = self.book.readings.given_rows.get(schedule, [])
         return [RowRecord(r.key, dict(r.cells), r.source) for r in given]
 
