@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import atexit
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from calcbook.job import Job
 from calcbook.live import notebook
@@ -17,6 +17,7 @@ if TYPE_CHECKING:
 __all__ = ["Session", "open_live"]
 
 _SESSIONS: dict[str, Session] = {}
+_BARS: dict[str, Any] = {}
 
 
 def open_live(name: str, title: str, signs: Mapping[str, str] | None = None) -> Workbook:
@@ -37,6 +38,7 @@ def open_live(name: str, title: str, signs: Mapping[str, str] | None = None) -> 
         former.settle()
     session = Session(name, title, signs, job=Job.find(), former=former)
     if former is not None:
+        session.retired = former.retired | former.views
         former.retire()
     if not _SESSIONS:
         notebook.watch(_cell_started)
@@ -50,9 +52,13 @@ def open_live(name: str, title: str, signs: Mapping[str, str] | None = None) -> 
 def _show_bar(session: Session) -> None:
     from calcbook.live.bar import Bar, shown  # noqa: PLC0415  widgets only where shown
 
+    name = session.book.name
+    if name in _BARS:
+        _BARS.pop(name).close()
     bar = Bar(session)
     session.bar = bar
-    notebook.publish_widget(shown(bar).model_id)
+    _BARS[name] = shown(bar)
+    notebook.publish_widget(_BARS[name].model_id)
 
 
 def _cell_started() -> None:

@@ -23,6 +23,7 @@ const jump = (element, place) => {
   const view = sections.find((one) => one.dataset.section === place.section);
   const rows = view ? [...view.querySelectorAll("[data-id]")] : [];
   const row = rows.find((one) => one.dataset.id === place.row) ?? view;
+  for (const list of element.querySelectorAll("details[open]")) list.open = false;
   if (!row) return;
   row.scrollIntoView({ block: "center" });
   const field = row.querySelector("input:not([type=checkbox]), select");
@@ -181,7 +182,7 @@ const corner = (element, model) => {
     onclick: () => element.scrollIntoView({ block: "start" }) });
   const tell = () => {
     const open = model.get("state").counts.filter((count) => count.open).map((count) => `! ${count.text}`);
-    strip.textContent = open.join("  ") || "✓";
+    strip.textContent = open.join("  ") || "✓ nothing open";
   };
   const watch = new IntersectionObserver(([entry]) => { strip.hidden = entry.isIntersecting; });
   requestAnimationFrame(() => {

@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-import copy
 from typing import TYPE_CHECKING, Any
 
 from calcbook.errors import CarryError, InputError, JobError, RecordError
 from calcbook.live.history import MarkStep, Step
 from calcbook.live.marking import Marking
-from calcbook.live.merging import by_kind, together
+from calcbook.live.merging import by_kind, copied, together
 from calcbook.record import EntryRecord, RowRecord
 from calcbook.run import carries
 from calcbook.taking import taken_now
@@ -32,7 +31,7 @@ class Changing(Marking):
         """
         before = {place: self._said(place) for place in changes}
         self.record.change(**by_kind(changes))
-        after = copy.deepcopy(changes)
+        after = {place: copied(item) for place, item in changes.items()}
         if before != after:
             self.history.add(Step(words, self.mark, before, after, stepped))
         self._follow()
@@ -40,7 +39,7 @@ class Changing(Marking):
     def _said(self, place: Place) -> Any:  # noqa: ANN401  any item
         """Return a copy of what the record says of an item, None where it says nothing."""
         kind, name = place
-        return copy.deepcopy(getattr(self.record, kind).get(name))
+        return copied(getattr(self.record, kind).get(name))
 
     def _follow(self) -> None:
         """Write, compute and show what is in memory now; in a kernel it is written afterwards."""
@@ -106,7 +105,7 @@ class Changing(Marking):
             for item in part.get("items", ()):
                 carried = self.book.readings.carried.get(item["name"])
                 if item.get("stale") and carried is not None and carried.item is not None:
-                    was = str((item["taken"] or {}).get("text") or "")
+                    was = str((item.get("taken") or {}).get("text") or "")  # of rows none is noted
                     now = taken_now(carried.origin, carried.item).value
                     found.append((item["name"], was, now, item["number"], part["title"]))
         return found

@@ -130,12 +130,14 @@ class Field {
   fit() {
     if (this.choice) {
       const words = this.node.selectedOptions[0]?.textContent ?? "";
-      this.node.style.setProperty("--cb-chars", Math.min(words.length + 1, 18));
+      this.node.style.setProperty("--cb-chars", Math.min(words.length + 2, 24));
       return;
     }
     const [least, most] = this.grid ? [3, 30] : this.spec?.long ? [12, 60] : [5, 30];
     const width = Math.min(Math.max(this.node.value.length + 1, least), most);
-    if (this.width !== width) this.node.style.setProperty("--cb-chars", (this.width = width));
+    if (this.width === width) return;
+    this.node.style.setProperty("--cb-chars", (this.width = width));
+    if (this.grid) this.node.size = width; // or the browser would give every column twenty
   }
 
   commit({ always = false } = {}) {

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from functools import lru_cache
 from typing import TYPE_CHECKING, Any
 
 from calcbook import typeset, units
@@ -23,6 +24,7 @@ def display_unit(item: Item, system: str) -> units.Unit:
     return kind.us if system == "US" else kind.si
 
 
+@lru_cache(maxsize=8192)
 def as_field(text: str, unit: units.Unit) -> tuple[str, units.Unit | None]:
     """Return what a field shows for a quantity as typed, and the unit of a bare number in it.
 

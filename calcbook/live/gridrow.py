@@ -59,12 +59,12 @@ class _Grid:
                                 strict=True))  # fmt: skip
 
     def row(self) -> Row:
-        pieces = page.pieces(self.block)
+        pieces = page.pieces(self.block, body=False)
         says = [f'<div class="cb-says">{page.words(line)}</div>' for line in self.block.says]
         stale = stale_pieces(self.view, self.item)
         totals = [page.words(total) for total in self.grid.totals]
         return pieces | {
-            "kind": "grid", "cls": f"{pieces['cls']} cb-filled", "name": self.name, "body": "",
+            "kind": "grid", "cls": f"{pieces['cls']} cb-filled", "name": self.name,
             "keys": [str(key) for key in self.item["rows"]],
             "margin": page.notes(self._remarks()),
             "fixed": self.brought,

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
@@ -18,6 +18,13 @@ KINDS = ("entries", "schedules", "carried")
 def items(form: Form) -> Items:
     """Return what a record says, by place."""
     return {(kind, name): item for kind in KINDS for name, item in getattr(form, kind).items()}
+
+
+def copied(item: Any) -> Any:  # noqa: ANN401  any item
+    """Return a copy of an item that shares nothing that can be changed; None stays None."""
+    if isinstance(item, list):
+        return [replace(row, cells=dict(row.cells)) for row in item]
+    return None if item is None else replace(item)
 
 
 def by_kind(found: Mapping[Place, Any]) -> dict[str, dict[str, Any]]:

@@ -30,6 +30,7 @@ if TYPE_CHECKING:
 
 REOPENED = "The workbook was opened again; run this cell again."
 PAINT_SECONDS = 0.05
+TELL_SECONDS = 0.06
 WRITE_SECONDS = 0.15
 LOOK_SECONDS = 1.0
 _log = logging.getLogger(__name__)
@@ -76,6 +77,7 @@ class Opened:
         self.book.on_show = self.show
         self.book.cell = notebook.running()[0]
         self.views: dict[str, SectionView] = {}
+        self.retired: dict[str, SectionView] = {}  # of the session before; their cells are to run
         self.bar: Watcher | None = None
         self.statement: Plain = {}
         self.notice = ""
@@ -84,6 +86,7 @@ class Opened:
         self._stamps = self._outside()
         self._basis: tuple[object, dict[str, str]] = (None, {})
         self._painting = Paced(self._paint, PAINT_SECONDS)
+        self._telling = Paced(self._tell, PAINT_SECONDS, first=TELL_SECONDS)
         self._writing = Paced(self._write, WRITE_SECONDS, first=0.0)
         self._looking: asyncio.TimerHandle | None = None
 
@@ -128,12 +131,14 @@ class Opened:
         notebook.publish(bundle, notebook.stamp(self.statement, section.title))
 
     def view(self, title: str) -> SectionView:
-        """Make the view of a section, in place of the one it had."""
+        """Make the view of a section, in place of the one it had, which is closed."""
         from calcbook.live.view import SectionView  # noqa: PLC0415  widgets only where shown
 
         if not self.statement or self.section(title, {}) == {}:
             self._evaluate()
-        self.views = {t: v for t, v in self.views.items() if t != title}
+        for views in (self.views, self.retired):
+            if title in views:
+                views.pop(title).close()
         view = SectionView(cast("Session", self), title)
         self.views[title] = view
         view.show(self.statement, self.section(title))
@@ -166,13 +171,18 @@ class Opened:
         self.views = {t: v for t, v in self.views.items() if t in known}
         for title, view in self.views.items():
             view.show(self.statement, self.section(title))
-        if self.bar is not None:
+        self._telling()
+
+    def _tell(self) -> None:
+        """Bring the bar up to date; in a kernel a little later, so that the lines come first."""
+        if self.bar is not None and self.statement:
             self.bar.show(self.statement)
 
     def retire(self) -> None:
         """Write what is not on disk yet, say in every view that it is out of use, and stop."""
         self.settle()
         self._painting.drop()
+        self._telling.drop()
         if self._looking is not None:
             self._looking.cancel()
             self._looking = None

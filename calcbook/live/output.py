@@ -5,8 +5,9 @@ Computed from the statement alone; nothing in it depends on the day, the machine
 
 from __future__ import annotations
 
+import logging
 import re
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, TypeVar
 
 from calcbook import figures, formula, typeset, units
 from calcbook.errors import CalcbookError
@@ -15,14 +16,16 @@ from calcbook.live.wording import LEFT_OVER
 from calcbook.wording import not_applied
 
 if TYPE_CHECKING:
-    from collections.abc import Iterable, Mapping
+    from collections.abc import Callable, Iterable, Mapping
 
     from calcbook.live.blocks import Block, Equation, Grid, Run, Words
 
     Plain = Mapping[str, Any]
 
-__all__ = ["amount_text", "drawn", "markdown", "picture", "plain"]
+__all__ = ["amount_text", "described", "drawn", "markdown", "picture", "plain"]
 
+T = TypeVar("T")
+_log = logging.getLogger(__name__)
 _SPECIAL = re.compile(r"([\\`*_\[\]<>|$#~])")
 
 
@@ -48,12 +51,31 @@ def picture(statement: Plain, section: Plain) -> bytes | None:
 
 
 def drawn(statement: Plain, item: Plain) -> bytes:
-    """Return a figure as PNG; one whose workbook has not changed since is not drawn again."""
+    """Return a figure as PNG; one whose workbook has not changed since is not drawn again.
+
+    Raises CalcbookError where it cannot be drawn; a fault of the program is one as well, so that
+    the section around the figure is shown.
+    """
     place = (statement["workbook"], statement["mark"], item["number"])
     shows = (statement["fingerprint"], item["figure"], repr(sorted(item["uses"].items())))
     if _DRAWN.get(place, ((), b""))[0] != shows:
-        _DRAWN[place] = (shows, figures.draw(statement, item, "png"))
+        _DRAWN[place] = (shows, _guarded(figures.draw, statement, item, "png"))
     return _DRAWN[place][1]
+
+
+def described(statement: Plain, item: Plain) -> str:
+    """Return what a figure shows, in words; raises as ``drawn``."""
+    return _guarded(figures.describe, statement, item)
+
+
+def _guarded(draw: Callable[..., T], *given: object) -> T:
+    try:
+        return draw(*given)
+    except CalcbookError:
+        raise
+    except Exception as error:
+        _log.info("a figure cannot be drawn", exc_info=True)
+        raise CalcbookError(f"{type(error).__name__}: {error}") from error
 
 
 _DRAWN: dict[tuple[str, str | None, str], tuple[tuple[str, ...], bytes]] = {}
@@ -99,7 +121,7 @@ class _Printer:
 
     def _told(self, item: Plain) -> str:
         try:
-            return figures.describe(self.statement, item)
+            return described(self.statement, item)
         except CalcbookError as error:
             return f"The figure cannot be drawn: {error}"
 

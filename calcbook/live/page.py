@@ -4,14 +4,15 @@ from __future__ import annotations
 
 import base64
 import re
+import traceback
 from functools import lru_cache
 from html import escape
 from typing import TYPE_CHECKING, Any
 
-from calcbook import figures, formula, typeset
+from calcbook import formula, typeset
 from calcbook.errors import CalcbookError
 from calcbook.live import blocks as parts
-from calcbook.live.output import amount_text, drawn
+from calcbook.live.output import amount_text, described, drawn
 
 if TYPE_CHECKING:
     from collections.abc import Mapping
@@ -42,8 +43,13 @@ def _run(run: Run) -> str:
         case parts.Relation(text):
             return relation(text)
         case parts.Amount(text, unit, typed):
-            shown = escape(amount_text(text, unit))
-            return f'<span class="cb-typed">{shown}</span>' if typed else shown
+            return _amount(text, unit, typed)
+
+
+@lru_cache(maxsize=16384)
+def _amount(text: str, unit: str, typed: bool) -> str:
+    shown = escape(amount_text(text, unit))
+    return f'<span class="cb-typed">{shown}</span>' if typed else shown
 
 
 @lru_cache(maxsize=4096)
@@ -63,10 +69,11 @@ def math(code: str) -> str:
     return f'<math><mstyle displaystyle="true">{code}</mstyle></math>'
 
 
-def pieces(block: Block) -> dict[str, str]:
+def pieces(block: Block, *, body: bool = True) -> dict[str, str]:
     """Return a block as the pieces of a row: its classes, number, words, body, margin.
 
-    A figure's picture is not drawn here: it takes longest (``figure``).
+    A figure's picture is not drawn here: it takes longest (``figure``). ``body``: False where the
+    row draws its own.
     """
     wide = block.kind in WIDE or (block.kind == "idle" and not block.says)
     kind = {"table": "table-item", "carried": "entry cb-carried"}.get(block.kind, block.kind)
@@ -74,7 +81,7 @@ def pieces(block: Block) -> dict[str, str]:
     classes += ["cb-within"] if block.within else []
     return {
         "cls": " ".join(classes), "no": escape(block.number), "words": words(block.words),
-        "body": _body(block), "margin": notes(block.remarks),
+        "body": _body(block) if body else "", "margin": notes(block.remarks),
     }  # fmt: skip
 
 
@@ -100,6 +107,14 @@ def _body(block: Block) -> str:
 def trouble(text: str) -> str:
     """Return what is wrong, marked by a word and a rule at its side."""
     return f'<div class="cb-trouble" role="status"><strong>Problem:</strong> {lines(text)}</div>'
+
+
+def where(error: BaseException | None) -> str:
+    """Return where a fault of the program came from, folded away; '' where there is none."""
+    if error is None:
+        return ""
+    frames = lines("".join(traceback.format_exception(error)))
+    return f"<details><summary>where</summary><pre>{frames}</pre></details>"
 
 
 def refused(reason: str) -> str:
@@ -158,8 +173,8 @@ def figure(statement: Plain, item: Plain) -> str:
     """Return a figure as a picture with its description, or why it cannot be drawn."""
     try:
         picture = drawn(statement, item)
-        told = figures.describe(statement, item)
+        told = described(statement, item)
     except CalcbookError as error:
-        return trouble(f"the figure cannot be drawn: {error}")
+        return trouble(f"the figure cannot be drawn: {error}") + where(error.__cause__)
     code = base64.b64encode(picture).decode("ascii")
     return f'<img class="cb-figure" alt="{escape(told)}" src="data:image/png;base64,{code}">'

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import copy
 from typing import TYPE_CHECKING
 
 from calcbook.errors import InputError
 from calcbook.live import pasting
 from calcbook.live.changes import Changing
+from calcbook.live.merging import copied
 from calcbook.record import RowRecord, row_digest
 from calcbook.wording import counted
 from calcbook.workbook import own_columns
@@ -136,10 +136,11 @@ class RowChanging(Changing):
         """
         own = own_columns(self.book, schedule)
         given = self.book.readings.given_rows.get(schedule, [])
-        rows = copy.deepcopy(self.record.schedules.get(schedule))
-        if rows is not None and schedule not in self.book.readings.carried:
+        rows = list(copied(self.record.schedules.get(schedule) or []))
+        brought = schedule in self.book.readings.carried
+        if schedule in self.record.schedules and not brought:
             return rows
-        kept = {row.key: row for row in rows or ()}
+        kept = {row.key: row for row in rows}
         return [
             kept.get(r.key)
             or RowRecord(r.key, {n: t for n, t in r.cells.items() if n in own}, r.source)

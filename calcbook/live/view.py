@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import asyncio
 import logging
-import traceback
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
@@ -62,6 +61,7 @@ class SectionView:
         self._made: dict[str, tuple[object, Row]] = {}
         self._state: object = None
         self._act_trouble = self._show_trouble = ""
+        self._acting = False
         self._drawing: asyncio.TimerHandle | None = None
 
     @property
@@ -88,7 +88,13 @@ class SectionView:
     # --- showing ----------------------------------------------------------------------------
 
     def show(self, statement: Plain, section: Plain) -> None:
-        """Bring the view up to date with a statement; what goes wrong is said in the view."""
+        """Bring the view up to date with a statement; what goes wrong is said in the view.
+
+        While a message of this view is dealt with, its answer does that: the browser gets one
+        patch, after those of the sections that depend on what was typed.
+        """
+        if self._acting:
+            return
         if self._mark != self.session.mark:
             self._mark = self.session.mark
             self.refused, self.told = {}, {}
@@ -218,11 +224,14 @@ class SectionView:
             return
         self._act_trouble, self.told = "", {}
         focus = None
+        self._acting = True
         try:
             if not self.retired:
                 focus = ACTS[message["do"]](self, message)
         except Exception as error:  # noqa: BLE001  shown at the section, never lost
             self._act_trouble = self._said(error)
+        finally:
+            self._acting = False
         self._answer(message, focus)
 
     def refuse(self, key: tuple[str, ...], text: str, html: str) -> None:
@@ -234,14 +243,17 @@ class SectionView:
         self._act_trouble += html
 
     def _answer(self, message: Row, focus: list[str] | None) -> None:
-        """Show what became of a message, and only then say that it was dealt with."""
+        """Show what became of a message, and say that it was dealt with."""
+        serial = self.page.data["serial"]
+        patch = self.page.acknowledge(int(message.get("n", 0)))
         if not self.retired:
             try:
                 self.show(self.session.statement, self.session.section(self.title))
             except Exception as error:  # noqa: BLE001  the section itself may be gone
                 self._act_trouble += self._said(error)
-        patch = self.page.acknowledge(int(message.get("n", 0)))
-        self._send(patch | ({"focus": focus} if focus else {}))
+        if self.page.data["serial"] == serial or focus:  # else the patch said so
+            now = {"base": self.page.data["serial"], "serial": self.page.data["serial"]}
+            self._send(patch | now | ({"focus": focus} if focus else {}))
 
     def _greet(self, message: Row) -> None:
         """Give a browser that just opened the sheet all of it, unless it has it already."""
@@ -250,10 +262,15 @@ class SectionView:
 
     def _said(self, error: Exception) -> str:
         _log.error("section %s", self.title, exc_info=error)
-        frames = "".join(traceback.format_exception(error))
-        text = f"{type(error).__name__}: {error}"
-        return (f"{page.trouble(text)}<details><summary>where</summary>"
-                f"<pre>{page.lines(frames)}</pre></details>")  # fmt: skip
+        return page.trouble(f"{type(error).__name__}: {error}") + page.where(error)
+
+    def close(self) -> None:
+        """Let the widget go: another one stands in its place."""
+        if self._drawing is not None:
+            self._drawing.cancel()
+        if self._sheet is not None:
+            self._sheet.close()
+            self._sheet = None
 
     def retire(self, reason: str) -> None:
         """Say why this view is out of use and let nothing more be typed into it."""

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 import pytest
-from lab import chromium, has_chromium, open_notebook, run_all, running_lab
+from lab import NO_CHROMIUM, chromium, has_chromium, open_notebook, run_all, running_lab
 from live_samples import WIND, make_job, opened
 
 from calcbook.job import Job, templates
@@ -38,12 +38,33 @@ def wind(job: Job) -> Session:
     return opened(WIND, job)
 
 
+def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
+    """Let the tests in a browser run last: while Playwright is open the thread has a loop."""
+    items.sort(key=lambda item: item.get_closest_marker("browser") is not None)
+
+
 @pytest.fixture(scope="session")
-def lab_job(tmp_path_factory: pytest.TempPathFactory) -> Job:
-    """Return a job from the templates, with number and initials, that a browser works on."""
+def browser() -> Iterator[Any]:
+    """Yield a Chromium whose pages share what they fetched."""
     if not has_chromium():
-        pytest.skip("needs Chromium, which is not here")
-    folder = tmp_path_factory.mktemp("lab") / "job"
+        pytest.skip(NO_CHROMIUM)
+    pytest.importorskip("playwright.sync_api", reason="needs playwright")
+    with chromium() as found:
+        yield found.new_context()
+
+
+@pytest.fixture(scope="session")
+def lab_folder(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """Return the folder that the lab shows: in it lie the jobs."""
+    folder = tmp_path_factory.mktemp("lab") / "jobs"
+    folder.mkdir()
+    return folder
+
+
+@pytest.fixture(scope="session")
+def lab_job(lab_folder: Path) -> Job:
+    """Return a job from the templates, with number and initials, that a browser works on."""
+    folder = lab_folder / "job"
     job = Job.start(folder, ["design-basis", "dead-load-take-off", "wind-pressure",
                              "column-accumulation"], templates())  # fmt: skip
     (folder / "design-basis.toml").write_text(
@@ -54,23 +75,17 @@ def lab_job(tmp_path_factory: pytest.TempPathFactory) -> Job:
 
 
 @pytest.fixture(scope="session")
-def lab(lab_job: Job) -> Iterator[str]:
-    """Yield the address of a JupyterLab on that job."""
-    with running_lab(lab_job.folder) as address:
+def lab(lab_folder: Path) -> Iterator[str]:
+    """Yield the address of a JupyterLab on that folder."""
+    if not has_chromium():
+        pytest.skip(NO_CHROMIUM)
+    with running_lab(lab_folder) as address:
         yield address
 
 
-@pytest.fixture(scope="module")  # while it runs, the thread has an event loop that others see
-def browser(lab: str) -> Iterator[Any]:  # noqa: ARG001  the lab stands before the browser
-    """Yield a Chromium."""
-    pytest.importorskip("playwright.sync_api", reason="needs playwright")
-    with chromium() as found:
-        yield found
-
-
-@pytest.fixture(scope="module")
-def wind_page(lab: str, browser: Any) -> Any:
+@pytest.fixture(scope="session")
+def wind_page(lab: str, lab_job: Job, browser: Any) -> Any:  # noqa: ARG001  the job stands in it
     """Return the wind workbook in a page, with all cells run."""
-    page = open_notebook(browser, lab, "wind-pressure.ipynb")
+    page = open_notebook(browser, lab, "job/wind-pressure.ipynb")
     run_all(page, ".cb-view:has-text('Plain stagnation pressure')")
     return page

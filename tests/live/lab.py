@@ -20,6 +20,7 @@ CHROMIUM = shutil.which("chromium") or "/usr/bin/chromium"
 NO_CHROMIUM = "needs Chromium, which is not here"
 IDLE = "text=/\\| Idle/"
 PATIENCE = 90_000
+NO_NEWS = '{ "fetchNews": "false", "checkForUpdates": false }'
 _SETTINGS = (
     "JUPYTER_CONFIG_DIR", "JUPYTERLAB_SETTINGS_DIR", "JUPYTERLAB_WORKSPACES_DIR",
     "JUPYTER_RUNTIME_DIR", "IPYTHONDIR",
@@ -38,6 +39,9 @@ def running_lab(folder: Path) -> Iterator[str]:
         probe.bind(("127.0.0.1", 0))
         port = probe.getsockname()[1]
     own = folder.parent / "settings"
+    quiet = own / "JUPYTERLAB_SETTINGS_DIR" / "@jupyterlab" / "apputils-extension"
+    quiet.mkdir(parents=True, exist_ok=True)
+    (quiet / "notification.jupyterlab-settings").write_text(NO_NEWS)
     env = os.environ | {kind: str(own / kind) for kind in _SETTINGS}
     server = subprocess.Popen(
         [sys.executable, "-m", "jupyterlab", "--no-browser", "--allow-root",
@@ -82,15 +86,16 @@ def chromium() -> Iterator[Any]:
 
 def open_notebook(browser: Any, address: str, notebook: str, width: int = 1000) -> Any:
     """Open a notebook of the lab in a page with a workspace of its own."""
-    page = browser.new_page(viewport={"width": width, "height": 1100})
+    page = browser.new_page()
+    page.set_viewport_size({"width": width, "height": 1100})
     page.goto(f"{address}/lab/workspaces/{Path(notebook).stem}-{width}/tree/{notebook}?reset")
     page.wait_for_selector(IDLE, timeout=PATIENCE)
     return page
 
 
 def run_all(page: Any, shown: str) -> None:
-    """Run all cells and wait until something is shown and the kernel rests."""
+    """Run all cells and wait until something is shown, in sight or not, and the kernel rests."""
     page.click("li.lm-MenuBar-item >> text=Run")
     page.click("text=Run All Cells")
-    page.wait_for_selector(shown, timeout=PATIENCE)
+    page.wait_for_selector(shown, state="attached", timeout=PATIENCE)
     page.wait_for_selector(IDLE, timeout=PATIENCE)

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, Any
 
 import pytest
 from lab import open_notebook, run_all
-from pages import SOON, paste, settled, wait_for_text
+from pages import SOON, at_rest, in_sight, paste, settled, wait_for_text
 
 if TYPE_CHECKING:
     from calcbook.job import Job
@@ -16,9 +16,9 @@ LEVEL = "[data-id='levels'] input[data-key='{}'][data-column='{}']"
 
 
 @pytest.fixture(scope="module")
-def basis(lab: str, browser: Any) -> Any:
+def basis(lab: str, lab_job: Job, browser: Any) -> Any:  # noqa: ARG001  the job stands in it
     """Return the design basis in a page, with all cells run."""
-    page = open_notebook(browser, lab, "design-basis.ipynb")
+    page = open_notebook(browser, lab, "job/design-basis.ipynb")
     run_all(page, "[data-id='levels'] table")
     return page
 
@@ -32,7 +32,7 @@ def keys(page: Any) -> list[str]:
 def test_a_cell_is_typed_and_refused(basis: Any, lab_job: Job) -> None:
     """A cell goes into the record; a wrong one is named under the table and changes nothing."""
     first = keys(basis)[0]
-    cell = basis.locator(LEVEL.format(first, "elevation"))
+    cell = in_sight(basis.locator(LEVEL.format(first, "elevation")))
     was = cell.input_value()
     cell.fill("1,5 m")
     cell.press("Enter")
@@ -47,7 +47,7 @@ def test_a_cell_is_typed_and_refused(basis: Any, lab_job: Job) -> None:
 def test_rows_are_added_moved_and_removed(basis: Any) -> None:
     """A row is put below another, moved, and taken out again; undo brings it back."""
     before = keys(basis)
-    basis.locator(f"button[title='add a row below {before[0]}']").click()
+    basis.locator(f"button[title='add a row below {before[0]}']").press("Enter")
     basis.wait_for_function(
         "n => document.querySelectorAll(\"[data-id='levels'] input[data-column='']\").length === n",
         arg=len(before) + 1, timeout=SOON,
@@ -70,7 +70,7 @@ def test_a_block_is_pasted_whole_or_not_at_all(basis: Any, lab_job: Job) -> None
     """A bad cell in the middle is named and nothing is changed; a good block goes in at once."""
     names = keys(basis)
     record = lab_job.record_path("design-basis")
-    before = record.read_text("utf-8")
+    before = at_rest(record, basis)
     cell = LEVEL.format(names[0], "elevation")
     paste(basis, cell, "7.5\n3,6\n0\n")
     wait_for_text(basis, "[data-id='levels'] .cb-refused", "3,6")

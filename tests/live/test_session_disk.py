@@ -16,9 +16,10 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from live_samples import WIND, make_job, opened
 from records import files, in_memory, on_disk
-from widgets_in import field, text
+from widgets_in import field, notices
 
 from calcbook.errors import InputError, RecordError
+from calcbook.live import opened as pacing
 from calcbook.live.merging import together
 from calcbook.record import EntryRecord, Record, RowRecord
 
@@ -209,7 +210,7 @@ def test_the_later_kernel_sees_the_earlier_ones_change(wind: Session, job: Job) 
     wind.look()
     assert field(wind, "Site", "Basic wind speed").value == "80"
     assert "V, floors" in wind.notice
-    assert "V, floors" in text(wind, "Site")
+    assert "V, floors" in notices(wind)
     assert wind.undo_words == ""
     wind.look()
     assert "V, floors" in wind.notice
@@ -350,7 +351,7 @@ def test_the_last_of_many_is_shown_and_few_are_painted(wind: Session) -> None:
             wind.enter("V", f"{40 + n} m/s")
             await asyncio.sleep(0)
         took = time.monotonic() - began
-        await asyncio.sleep(0.12)
+        await asyncio.sleep(0.25)  # the bar comes a little after the lines
         return took
 
     took = asyncio.run(change())
@@ -358,8 +359,12 @@ def test_the_last_of_many_is_shown_and_few_are_painted(wind: Session) -> None:
     assert 2 <= len(painted) <= 4 + took / 0.05
 
 
-def test_the_first_change_of_a_quiet_time_is_written_at_once(wind: Session) -> None:
-    """As soon as the kernel has shown it; a second one within 150 ms waits."""
+def test_the_first_change_of_a_quiet_time_is_written_at_once(
+    job: Job, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """As soon as the kernel has shown it; a second one within the pace of writing waits."""
+    monkeypatch.setattr(pacing, "WRITE_SECONDS", 5.0)
+    wind = opened(WIND, job)
 
     async def change() -> tuple[str, str]:
         wind.enter("V", "72 m/s")

@@ -5,7 +5,6 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any
 
 import pytest
-from lab import NO_CHROMIUM, chromium, has_chromium
 from live_samples import WIND, make_job, opened
 from sheet_page import SheetPage
 
@@ -15,19 +14,8 @@ if TYPE_CHECKING:
 
     from calcbook.live import Session
 
-pytestmark = [
-    pytest.mark.browser,
-    pytest.mark.skipif(not has_chromium(), reason=NO_CHROMIUM),
-]
+pytestmark = pytest.mark.browser
 SPEED = "input[title='Basic wind speed']"
-
-
-@pytest.fixture(scope="module")
-def browser() -> Iterator[Any]:
-    """Yield the system's Chromium."""
-    pytest.importorskip("playwright.sync_api", reason="needs playwright")
-    with chromium() as found:
-        yield found
 
 
 @pytest.fixture
@@ -35,7 +23,8 @@ def show(
     browser: Any, wind: Session, monkeypatch: pytest.MonkeyPatch
 ) -> Iterator[Callable[[str], SheetPage]]:
     """Return what shows a section of the wind sample in a page."""
-    page = browser.new_page(viewport={"width": 1000, "height": 800})
+    page = browser.new_page()
+    page.set_viewport_size({"width": 1000, "height": 800})
     yield lambda title: SheetPage(page, wind.views[title], monkeypatch)
     page.close()
 
@@ -228,6 +217,7 @@ def test_a_missed_patch_is_made_up_for(show: Callable[[str], SheetPage], wind: S
     wind.enter("V", "75 m/s")
     sheet.patches.clear()
     wind.enter("V", "80 m/s")
+    sheet.page.wait_for_timeout(100)  # the second of two quick changes is painted a little later
     sheet.deliver()
     sheet.settle()
     assert "3.923 kPa" in sheet.page.locator("[data-id=q] .cb-result").inner_text()

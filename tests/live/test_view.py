@@ -11,9 +11,10 @@ import pytest
 from live_samples import WIND, opened
 from widgets_in import field, text
 
+from calcbook import figures
 from calcbook.errors import InputError
 from calcbook.job import Job
-from calcbook.live import Session, notebook
+from calcbook.live import Session, notebook, output
 from calcbook.live.sheet import Sheet
 from calcbook.record import CarriedRecord
 
@@ -123,6 +124,49 @@ def test_a_figure_is_drawn_after_the_lines(
 
     assert asyncio.run(change()) == 0
     assert "6.4" in sent[-1]["rows"]
+
+
+def test_a_figure_that_fails_leaves_the_section_in_sight(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """A fault of the program stands at the figure, with its place folded away; the rows are there.
+
+    The output that is kept in the file says it too.
+    """
+
+    def fail(*_: object) -> bytes:
+        raise ZeroDivisionError("no paper")
+
+    monkeypatch.setattr(figures, "draw", fail)
+    session = live(6, "dead-load-take-off", tmp_path, monkeypatch)
+    view = next(v for v in session.views.values() if "6.4" in v.rows)
+    body = view.rows["6.4"]["body"]
+    assert "the figure cannot be drawn: ZeroDivisionError: no paper" in body
+    assert "<summary>where</summary>" in body
+    assert len(view.rows) > 1
+    assert output.picture(session.statement, session.section(view.title)) is None
+
+
+def test_a_view_that_is_replaced_is_closed(wind: Session) -> None:
+    """Run again, a cell has a view of its own, and the former widget is let go."""
+    former = wind.views["Site"].box
+    other = wind.views["Pressure"].box
+    assert wind.view("Site").box is not former
+    assert former.comm is None
+    assert other.comm is not None
+
+
+def test_rows_that_moved_are_told_and_taken(column: Session) -> None:
+    """The levels of the design basis have another row: they are stale until they are taken."""
+    assert column.job is not None
+    column.take("levels")
+    basis = column.job.record("design-basis")
+    basis.change(schedules={"levels": basis.schedules["levels"][1:]})
+    basis.save()
+    column.look()
+    assert "levels" in [name for name, *_ in column.stale()]
+    column.take_all()
+    assert column.stale() == []
 
 
 def test_rows_brought_forward_have_fields_in_the_columns_typed_here(column: Session) -> None:

@@ -6,6 +6,8 @@ import html
 import re
 from typing import TYPE_CHECKING, Any
 
+from calcbook.live.bar import Bar
+
 if TYPE_CHECKING:
     from collections.abc import Iterator
 
@@ -142,6 +144,13 @@ def text(session: Session, title: str) -> str:
     pieces = [head["number"], head["title"], head["notice"], head["trouble"], *told(view.rows)]
     bare = re.sub(r"<[^>]+>", " ", " ".join(pieces))
     return " ".join(html.unescape(bare).split())
+
+
+def notices(session: Session) -> str:
+    """Return what the bar has to say, in one string."""
+    bar = Bar(session)
+    bar.show(session.statement)
+    return " ".join(bar.state["notices"])
 
 
 def told(part: Any) -> Iterator[str]:
