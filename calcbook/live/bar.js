@@ -104,7 +104,7 @@ const PARTS = {
   said: (element, send, s) => [
     ...s.asks.map((ask) => askNode(send, ask)),
     ...(s.unwritten ? [make("div", { class: "cb-bad", role: "alert" }, [
-      make("span", { text: `Not on disk: ${s.unwritten} ` }),
+      make("span", { text: `${s.unwritten} ` }),
       button("write again", () => send({ do: "write_again" }))])] : []),
     ...(s.told ? [make("div", { class: "cb-bad", role: "alert", text: s.told })] : []),
     ...s.notices.map((text) => make("div", { class: "cb-quiet", role: "status", text })),

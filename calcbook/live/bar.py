@@ -55,7 +55,7 @@ class Bar:
         self.state = {
             "title": statement["title"],
             "mark": self._marks(),
-            "counts": overview.counts(statement),
+            "counts": [*overview.counts(statement), overview.refused(session.views)],
             "undo": session.undo_words,
             "redo": session.redo_words,
             "notices": [t for t in (self._standing(), session.notice) if t],

@@ -87,7 +87,10 @@ class Field {
     this.node.addEventListener("keydown", (event) => this.pressed(event));
     this.node.addEventListener("blur", () => this.commit());
     if (this.choice) this.node.addEventListener("change", () => this.commit());
-    else this.node.addEventListener("input", () => this.fit());
+    else this.node.addEventListener("input", () => {
+      this.retyped = true;
+      this.fit();
+    });
   }
 
   fillOptions(options) {
@@ -143,7 +146,7 @@ class Field {
   commit({ always = false } = {}) {
     if (!(this.dirty || always) || (this.choice && this.node.selectedIndex < 0)) return;
     this.known = this.node.value;
-    this.unsigned = false;
+    this.unsigned = this.retyped = false;
     this.waiting = null;
     this.fit();
     this.sent = this.post(this.node.value);
@@ -154,7 +157,8 @@ class Field {
     const wish = this.dirty ? null : undoKey(event);
     if (key === "Enter" && !alt) {
       event.preventDefault();
-      this.commit({ always: this.unsigned }); // a stepped value is confirmed by Enter
+      this.commit({ always: this.unsigned || this.retyped }); // a stepped value, or one typed
+      // again as it was, is confirmed by Enter
     } else if (key === "Escape") {
       event.preventDefault();
       this.letGo();

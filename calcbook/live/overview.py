@@ -10,6 +10,8 @@ from calcbook.wording import counted, verdict
 if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping
 
+    from calcbook.live.view import SectionView
+
     Plain = Mapping[str, Any]
 
 #: The counts in the order shown: what there is of it, what one of it is called, and '' for none.
@@ -36,6 +38,17 @@ def counts(statement: Plain) -> list[dict[str, Any]]:
             words = _checks_words(statement)
         told.append({"id": group, "text": words, "open": bool(places), "places": places})
     return told
+
+
+def refused(views: Mapping[str, SectionView]) -> dict[str, Any]:
+    """Return the count of texts that were not taken and still stand in their fields."""
+    places = [
+        {"text": f"{', '.join(key)}: '{one.text}'", "section": title, "row": key[0]}
+        for title, view in views.items()
+        for key, one in view.refused.items()
+    ]
+    words = f"{counted(len(places), 'text')} not taken" if places else ""
+    return {"id": "refused", "text": words, "open": bool(places), "places": places}
 
 
 def _checks_words(statement: Plain) -> str:

@@ -235,8 +235,9 @@ class SectionView:
         self._answer(message, focus)
 
     def refuse(self, key: tuple[str, ...], text: str, html: str) -> None:
-        """Keep a text that was not taken in its field, with the reason."""
+        """Keep a text that was not taken in its field, with the reason; the bar counts it."""
         self.refused[key] = Refusal(text, html)
+        self.session.refresh(evaluate=False)
 
     def say(self, html: str) -> None:
         """Show something at the head of the section until the next message."""

@@ -40,6 +40,16 @@ def test_counts_name_the_places_to_jump_to(bar: Bar, wind: Session) -> None:
     assert "1.2 Basic wind speed" not in [p["text"] for p in counts(bar)["unconfirmed"]["places"]]
 
 
+def test_texts_not_taken_are_counted_until_they_are_put_right(bar: Bar, wind: Session) -> None:
+    """A refused text stands in the bar with its field, and goes with the refusal."""
+    wind.views["Site"].act({"do": "enter", "name": "V", "text": "1,5 m"})
+    assert counts(bar)["refused"]["text"] == "1 text not taken"
+    (place,) = counts(bar)["refused"]["places"]
+    assert place == {"text": "V: '1,5 m'", "section": "Site", "row": "V"}
+    wind.views["Site"].act({"do": "enter", "name": "V", "text": "60 m/s"})
+    assert counts(bar)["refused"]["text"] == ""
+
+
 def test_undo_and_redo_are_named_and_done(bar: Bar, wind: Session) -> None:
     """The bar says what would be undone, and does it."""
     assert bar.state["undo"] == ""
