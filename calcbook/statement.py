@@ -254,7 +254,7 @@ class Writer:
         found = self.results.values.get(bound.name) if usable else None
         solver = solvers.find(item.by)
         takes = [
-            {"role": role, "meaning": solver.roles[role].meaning, "case": case, "name": name}
+            {"role": role, **solver.roles[role].told(), "case": case, "name": name}
             for role, case, name in solving.filled(item)
             if self._acts(name)
         ]

@@ -41,11 +41,26 @@ def solved_words(item: Mapping[str, Any]) -> str:
 
 
 def solver_takes(item: Mapping[str, Any]) -> list[tuple[str, list[tuple[str, str]]]]:
-    """Return what a solver takes: (what it is, its (load case or '', name) pairs) by role."""
+    """Return what a solver takes: (what it is, its (load case or '', name) pairs) by role.
+
+    Where a solver has main roles, those are told; what else it takes stands in one list of names,
+    and in one of the letters of those that it takes for each load case.
+    """
     roles: dict[str, list[tuple[str, str]]] = {}
+    some = any(taken["main"] for taken in item["takes"])
+    rest: dict[str, None] = {}
+    letters: dict[str, None] = {}
     for taken in item["takes"]:
-        roles.setdefault(taken["meaning"], []).append((taken["case"], taken["name"]))
-    return list(roles.items())
+        if some and not taken["main"]:
+            name = taken["name"]
+            if taken["case"]:
+                letters[name.partition("_")[0]] = None
+            else:
+                rest[name] = None
+        else:
+            roles.setdefault(taken["meaning"], []).append((taken["case"], taken["name"]))
+    more = (("and of these", rest), ("and by load case", letters))
+    return [*roles.items(), *((words, [("", n) for n in found]) for words, found in more if found)]
 
 
 AT_LEAST = {">=": "at least", ">": "more than", "==": "to be", "!=": "not to be"}

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from calcbook.wording import cases_told, compared, symbols_in
+from calcbook.wording import cases_told, compared, solver_takes, symbols_in
 
 
 def side(text: str, unit: str = "m") -> dict[str, str]:
@@ -50,3 +50,21 @@ def test_symbols_are_found_in_words() -> None:
         ("at ", False), ("q_z", True), (", not ", False), ("K_zt", True),
     ]  # fmt: skip
     assert symbols_in("see a_b.toml and x/q_z") == [("see a_b.toml and x/q_z", False)]
+
+
+def test_what_a_solver_takes_is_told_shortly_where_it_has_main_roles() -> None:
+    """Main roles are told with their names; the others as names, those by load case as letters."""
+    taken = [
+        {"meaning": "strips", "case": "", "name": "strip", "main": True},
+        {"meaning": "strips from", "case": "", "name": "x_1", "main": False},
+        *({"meaning": "load of strips", "case": c, "name": f"w_{c}", "main": False} for c in "DL"),
+    ]
+    assert solver_takes({"takes": taken}) == [
+        ("strips", [("", "strip")]), ("and of these", [("", "x_1")]),
+        ("and by load case", [("", "w")]),
+    ]  # fmt: skip
+    plain = [one | {"main": False} for one in taken]
+    assert solver_takes({"takes": plain}) == [
+        ("strips", [("", "strip")]), ("strips from", [("", "x_1")]),
+        ("load of strips", [("D", "w_D"), ("L", "w_L")]),
+    ]  # fmt: skip

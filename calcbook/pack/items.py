@@ -273,7 +273,7 @@ def equation(item: Item) -> dict[str, Any]:
         )
         for output in ("typst", "plain")
     )
-    first: list[list[Node]] = [[f"{plain[0]} = {plain[1]}"]]
+    first: list[list[Node]] = [[" = ".join(plain[:2])]]
     rest: list[list[Node]] = [["= ", part] for part in plain[2:]]
     if result:
         parts[-1] = f"bold({parts[-1]})"

@@ -48,6 +48,9 @@ class Role:
         A solver does without it.
     may_idle
         What fills it may be under a condition that does not hold: the solver is given None.
+    main
+        It is printed with its meaning. Of a solver that has such roles, the others are printed as
+        symbols alone.
     """
 
     meaning: str
@@ -56,6 +59,11 @@ class Role:
     by_case: bool = False
     optional: bool = False
     may_idle: bool = False
+    main: bool = False
+
+    def told(self) -> dict[str, str | bool]:
+        """Return what is said of it where it is filled: ``meaning``, and whether it is ``main``."""
+        return {"meaning": self.meaning, "main": self.main}
 
 
 @dataclass(frozen=True)

@@ -92,9 +92,11 @@ class FoundBeam:
         spans = self.solved.result.spans
         said = [f"equilibrium is closed to {self.solved.cases.residual:.0e} of the loads"]
         if self.patterned:
-            loaded = self.solved.loaded.any(axis=0).sum()
+            loaded = int(self.solved.loaded.any(axis=0).sum())
             every = "every arrangement" if self.solved.exact else "the standard arrangements"
-            said.append(f"live load on any of {loaded} loaded spans of {len(spans)}: {every} tried")
+            of = "1 span" if len(spans) == 1 else f"{loaded} of {len(spans)} spans"
+            tried = f"{every} on them tried" if loaded > 1 else "with it and without it tried"
+            said.append(f"live load is given on {of}: {tried}" if loaded else "no live load given")
         return tuple(said)
 
     def curves(self) -> list[dict[str, Any]]:
@@ -189,7 +191,9 @@ class FoundBeam:
         values = self._span_values(quantity, self._strength, largest=largest)
         best = [rows[np.argmax(_alike_largest(one if largest else -one))] for one in values.T]
         named = [self.names.strength[self.solved.combination[r] - len(self._alone)] for r in best]
-        return self._worded(named)
+        found = values.max(axis=0) if largest else values.min(axis=0)
+        size = np.abs(found) > NOISE * self._largest(quantity)
+        return self._worded([name if some else "" for name, some in zip(named, size, strict=True)])
 
     def deflection(self, combinations: range) -> Array:
         """Return the deflection of largest magnitude in the span after each row."""

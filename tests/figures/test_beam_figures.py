@@ -39,11 +39,25 @@ SOLVED = {
         for name, a, b in (("shear", 28e3, -31e3), ("moment", 50e3, -9e3))
     ],
 }  # fmt: skip
-BEAM = statement(SPANS, STRIPS, POINTS, FORCES, SOLVED)
+LINES = schedule(
+    "lines", ["wide down", "up, of a length that no box has room for"],
+    column("x_3", "m", ["0", "6"]), column("x_4", "m", ["6", "8"]),
+    column("w_a", "kN/m", ["8", "-2"], 1e3), column("w_e", "kN/m", ["8", "-4"], 1e3),
+)  # fmt: skip
+TURNS = schedule(
+    "moments", ["left", "right"], column("x_5", "m", ["0", "6"]),
+    column("M_5", "kN*m", ["30", "-30"], 1e3),
+)  # fmt: skip
+BEAM = statement(SPANS, STRIPS, POINTS, FORCES, SOLVED, LINES, TURNS)
 ELEVATION = figure(
     "beam-elevation", supports="supports", x="x", held="held", span="l", strips="strips",
     strip_from="x_1", strip_to="x_2", ramp="r_e", strip_loads=["w_D", "w_L"], points="points",
     point="x_p", force="P_p",
+)  # fmt: skip
+SENSES = figure(
+    "beam-elevation", supports="supports", x="x", held="held", span="l", lines="lines",
+    line_from="x_3", line_to="x_4", line_load="w_a", line_end="w_e", moments="moments",
+    moment_at="x_5", moment="M_5",
 )  # fmt: skip
 ENVELOPE = figure(
     "beam-envelope", solver="solved", supports="supports", x="x", forces="forces",
@@ -54,10 +68,33 @@ ENVELOPE = figure(
 def test_supports_spans_and_loads_are_shown() -> None:
     """Keys, span lengths and each load with its values as printed stand in the picture."""
     said = words(figures.draw(BEAM, ELEVATION))
-    assert {"A", "B", "tip", "6.000 m", "2.000 m", "one", "two", "P", "up"} <= set(said)
-    assert "one: D 14.0 kN/m" in said
-    assert "two: D 7.0 kN/m, L 3.0 kN/m" in said
-    assert f"up: {MINUS}5 kN" in said
+    assert {"A", "B", "tip", "6.000 m", "2.000 m", "1", "2", "3", "4"} <= set(said)
+    assert "1 one: D 14.0 kN/m" in said
+    assert "2 two: D 7.0 kN/m, L 3.0 kN/m" in said
+    assert f"4 up: {MINUS}5 kN" in said
+
+
+def test_loads_are_to_one_scale_and_point_the_way_they_act() -> None:
+    """4 kN/m is half as high as 8 kN/m; uplift has arrows upward; a name is never cut."""
+    svg = figures.draw(BEAM, SENSES)
+    down, up = (outline(svg, f"load-{key}") for key in LINES["rows"])
+    tall = [max(y for _, y in corners) - min(y for _, y in corners) for corners in (down, up)]
+    assert tall[1] / tall[0] == pytest.approx(0.5, rel=1e-2)
+    for key, sense in zip(LINES["rows"], (1.0, -1.0), strict=True):
+        tail, head = outline(svg, f"acts-{key}")
+        assert sense * (head[1] - tail[1]) > 0.0  # y is downward in the drawing
+    assert any(one.startswith(f"2 {LINES['rows'][1]}: {MINUS}2 kN/m") for one in words(svg))
+
+
+def test_moments_turn_the_way_they_act_and_lie_over_the_beam() -> None:
+    """The arc of a moment ends at its right where clockwise, at its left where not."""
+    svg = figures.draw(BEAM, SENSES)
+    beam = outline(svg, "beam")[0]
+    scale = (outline(svg, "beam")[1][0] - beam[0]) / 8.0
+    for key, x, sense in (("left", 0.0, 1.0), ("right", 6.0, -1.0)):
+        arc = outline(svg, f"moment-{key}")
+        assert sense * (arc[-1][0] - beam[0] - x * scale) > 1.0
+        assert max(y for _, y in arc) < beam[1]
 
 
 def test_a_panel_rises_and_falls() -> None:
@@ -68,7 +105,7 @@ def test_a_panel_rises_and_falls() -> None:
     assert (d - c) / (d - a) == pytest.approx(2 / 6, rel=1e-3)
 
 
-@pytest.mark.parametrize("item", [ELEVATION, ENVELOPE])
+@pytest.mark.parametrize("item", [ELEVATION, ENVELOPE, SENSES])
 def test_no_words_lie_on_each_other(item: dict[str, Any]) -> None:
     """Every word has room of its own."""
     found = boxes(figures.draw(BEAM, item))

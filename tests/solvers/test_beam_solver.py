@@ -46,8 +46,27 @@ def test_it_says_how_live_load_was_arranged() -> None:
     """Equilibrium, and the spans that were tried, are told; without patterns nothing is."""
     said = SOLVER.solution(given()).says()
     assert said[0].startswith("equilibrium is closed to")
-    assert said[1] == "live load on any of 2 loaded spans of 2: every arrangement tried"
+    assert said[1] == "live load is given on 2 of 2 spans: every arrangement on them tried"
     assert len(SOLVER.solution(given(pattern="all spans")).says()) == 1
+
+
+def test_it_says_so_of_one_span_with_live_load() -> None:
+    """Live load on one of two spans is tried with it and without it."""
+    ends = {"line to": np.array([30.0, 25.0])}
+    said = SOLVER.solution(given(**ends)).says()
+    assert said[1] == "live load is given on 1 of 2 spans: with it and without it tried"
+
+
+def test_a_moment_that_is_nowhere_has_no_combination() -> None:
+    """A simple span hogs nowhere: its smallest moment is that of no combination."""
+    one = {
+        "supports": ["A", "B"], "support place": np.array([20.0, 30.0]),
+        "support kind": ["pinned", "roller"], "vertical stiffness": np.zeros(2),
+        "turning stiffness": np.zeros(2),
+    }  # fmt: skip
+    found = SOLVER.solution(given(**one))
+    assert found.give("combination of the smallest moment in the span", "") == ["", ""]
+    assert found.give("combination of the largest moment in the span", "") == ["2", ""]
 
 
 def test_what_is_rounding_is_nothing() -> None:

@@ -44,7 +44,7 @@ def point(key: str, x: str, load: str, case: str = "dead, certain") -> Cells:
 
 def panel(key: str, x_1: str, x_2: str, across: str, spread: str = "two-way", **more: str) -> Cells:
     """Return a strip or panel at Level 2 with 5.5 kPa of live load and a use typed."""
-    plain = {"bay": "A-B", "on": "Level 2", "use": "as typed", "L_a": "5.5 kPa"}
+    plain = {"bay": "A", "on": "Level 2", "use": "as typed", "L_a": "5.5 kPa"}
     return {"key": key, **plain, "spread": spread, "x_1": x_1, "x_2": x_2, "b_s": across, **more}
 
 

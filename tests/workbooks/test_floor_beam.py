@@ -203,13 +203,68 @@ def test_roof_live_load_governs_on_alternate_spans(fill: Fill) -> None:
     assert kilonewtons(sheet, "R_Lr") == pytest.approx([7 / 16 * 24, 10 / 8 * 24, 7 / 16 * 24])
 
 
-def test_a_strip_over_two_spans_is_told(fill: Fill) -> None:
-    """A strip longer than any span would reduce live load by too large an area."""
-    ends = [support("A", "0 m"), support("B", "6 m", "roller"), support("C", "12 m", "roller")]
-    told = "No strip or panel is longer than the longest span: one is listed for each span"
-    for end, kept in (("12 m", False), ("6 m", True)):
-        sheet = fill(BOOK, {}, beam(ends, strips=[panel("1", "0 m", end, "4 m", "one-way")]))
-        assert sheet.checks()[told] is kept
+WITHIN = "Each strip or panel lies within the span it is listed in: one is listed for each span"
+THREE = [support("A", "0 m"), support("B", "6 m", "roller"), support("C", "12 m", "roller")]
+
+
+@pytest.mark.parametrize(("bay", "x_1", "x_2", "kept"), [
+    ("A", "0 m", "6 m", True), ("B", "6 m", "12 m", True), ("A", "0 m", "12 m", False),
+    ("A", "6 m", "12 m", False), ("B", "0 m", "6 m", False), ("C", "6 m", "12 m", False),
+])  # fmt: skip
+def test_a_strip_outside_its_span_is_told(
+    fill: Fill, bay: str, x_1: str, x_2: str, *, kept: bool
+) -> None:
+    """A strip over two spans, or named for another, would reduce live load by a wrong area."""
+    strips = [panel("1", x_1, x_2, "4 m", "one-way", bay=bay)]
+    assert fill(BOOK, {}, beam(THREE, strips=strips)).checks()[WITHIN] is kept
+
+
+def test_strips_of_two_spans_are_not_reduced_together(fill: Fill) -> None:
+    """Two spans of 6 x 6 m: each is reduced by its own 36 m2, 0.25 + 4.57/sqrt(72)."""
+    strips = [panel(bay, x_1, x_2, "6 m", "one-way", bay=bay, L_a="2 kPa")
+              for bay, x_1, x_2 in (("A", "0 m", "6 m"), ("B", "6 m", "12 m"))]  # fmt: skip
+    sheet = fill(BOOK, {}, beam(THREE, strips=strips))
+    assert sheet.column("live", "R_f") == pytest.approx([0.25 + 4.57 / 72**0.5] * 2)
+
+
+def test_the_place_of_a_borne_beam_keeps_its_wind_and_its_sense(fill: Fill) -> None:
+    """A reaction that lifts under E+ and under wind a does so on the beam that bears it."""
+    forces = {"D": 60, "Dmin": 40, "L0": 20, "Lu": 15, "Lr": 0, "Wa": -4, "Wb": 3, "E": -12}
+    reaction = {"key": "B2 4", "B_fL": "0.5", **{f"B_{n}": f"{f} kN" for n, f in forces.items()}}
+    borne = {"key": "1", "bearing_of": "B2 4", "n_b": "1", "x_b": "3 m", "live_as": "unreduced"}
+    own = [point("E", "3 m", "12 kN", "earthquake"), point("W", "3 m", "5 kN", "wind a")]
+    rows = beam(SIMPLE, beams=[borne], points=own) | rows_of("bearings", reaction)
+    sheet = fill(BOOK, {}, rows)
+    assert kilonewtons(sheet, "R_E") == pytest.approx([0.0, 0.0])
+    assert kilonewtons(sheet, "R_Wa") == pytest.approx([0.5, 0.5])
+    assert kilonewtons(sheet, "R_Wb") == pytest.approx([1.5, 1.5])
+    assert kilonewtons(sheet, "R_Wc") == pytest.approx([1.5, 1.5])
+    assert all(sheet.checks().values())
+
+
+@pytest.mark.parametrize("pattern", ["by span", "all spans"])
+def test_live_load_never_lifts_what_carries_the_beam(fill: Fill, pattern: str) -> None:
+    """Live load on an overhang alone lifts the far support; what is handed on is 0 there."""
+    ends = [support("A", "0 m"), support("B", "6 m", "roller"), support("C", "8 m", "free end")]
+    lines = [line("L", "6 m", "8 m", "12 kN/m", case="live")]
+    sheet = fill(BOOK, {"pattern": pattern}, beam(ends, lines=lines))
+    assert kilonewtons(sheet, "R_La", "case_reactions")[:2] == pytest.approx([-4.0, 28.0])
+    for name in ("R_L", "R_L0"):
+        assert kilonewtons(sheet, name)[:2] == pytest.approx([0.0, 28.0], abs=1e-9)
+
+
+def test_a_factored_moment_by_hand(fill: Fill) -> None:
+    """1.2 D + 1.6 L of a simple span is that of a section; a fixed pattern is held to less.
+
+    Two spans: D largest at 3/8 l, where M_hand is (1.2 D + 1.6 L) 9/128 l2 with L on both.
+    """
+    lines = [line("D", "0 m", "6 m", "20 kN/m"), line("L", "0 m", "6 m", "10 kN/m", case="live")]
+    sheet = fill(BOOK, {}, beam(SIMPLE, lines=lines))
+    assert sheet.value("M_hand") == pytest.approx((1.2 * 20 + 1.6 * 10) * EIGHTH)
+    assert sheet.value("M_u") == pytest.approx(sheet.value("M_hand"))
+    sheet = two_spans(fill)
+    assert sheet.value("M_hand") / 1e3 == pytest.approx(40 * 36 * 9 / 128)
+    assert all(sheet.checks().values())
 
 
 def test_the_envelope_holds_every_combination(fill: Fill) -> None:
@@ -266,7 +321,7 @@ def test_many_cases_are_each_solved(run: Callable[..., Sheet]) -> None:
 
 def test_a_beam_on_a_girder(fill: Fill) -> None:
     """What another beam brings acts at its place: unreduced, or as it was reduced there."""
-    forces = {"D": 60, "Dmin": 40, "L0": 20, "Lu": 15, "Lr": 0, "Wc": 3, "Wt": -4, "Ec": 0}
+    forces = {"D": 60, "Dmin": 40, "L0": 20, "Lu": 15, "Lr": 0, "Wa": 3, "Wb": -4, "E": 0}
     reaction = {"key": "B2 4", "B_fL": "0.5", **{f"B_{n}": f"{f} kN" for n, f in forces.items()}}
     for live_as, live in (("unreduced", 40.0), ("reduced", 30.0)):
         borne = {"key": "1", "bearing_of": "B2 4", "n_b": "2", "x_b": "1.5 m", "live_as": live_as}

@@ -103,3 +103,13 @@ def test_a_bearing_that_is_not_there(fill: Fill) -> None:
     borne = {"key": "1", "bearing_of": "B9 A", "n_b": "1", "x_b": "3 m", "live_as": "unreduced"}
     sheet = fill(BOOK, {}, beam(SIMPLE, beams=[borne]))
     assert "there is no row 'B9 A' in bearing" in problem(sheet)
+
+
+def test_a_strip_in_a_span_that_is_not_there(fill: Fill) -> None:
+    """A strip is listed in the span after a support; another word is named."""
+    strips = [panel("1", "0 m", "6 m", "4 m", bay="A-B")]
+    sheet = fill(BOOK, {}, beam(SIMPLE, strips=strips))
+    column = next(c for c in find_item(sheet.statement, "areas")["columns"] if c["name"] == "y_1")  # type: ignore[index]
+    assert "there is no row 'A-B' in support" in column["problem"][0]
+    within = next(i for i in sheet.items() if "lies within the span" in i["meaning"])
+    assert within["satisfied"] is None
