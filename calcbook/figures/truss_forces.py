@@ -1,4 +1,8 @@
-"""A truss with the largest tension and compression of every member, by line and by number."""
+"""A truss with the largest tension and compression of every member, by line and by number.
+
+The truss keeps its proportions. Forces stand on the members where all of them have room there;
+otherwise each member has a number, and its forces are listed below.
+"""
 
 from __future__ import annotations
 
@@ -8,7 +12,7 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.figures import lookup
 from calcbook.figures.lookup import MINUS, Missing, Shown
-from calcbook.figures.sketch import GREY, INK, MARGIN, ROW, WIDTH, Sketch, text_width
+from calcbook.figures.sketch import GREY, INK, MARGIN, ROW, WIDTH, Sketch, shortened, text_width
 from calcbook.figures.truss_frame import NEEDS as FRAME
 from calcbook.figures.truss_frame import TAKES as MORE
 from calcbook.figures.truss_frame import clear_of, frame_of
@@ -18,7 +22,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from calcbook.figures.sketch import Point
-    from calcbook.figures.truss_frame import Frame
+    from calcbook.figures.truss_frame import Frame, Taken
 
 NEEDS = (*FRAME, "envelope", "largest", "smallest")
 TAKES = MORE
@@ -29,8 +33,9 @@ _WORDS = {
     "both": "pulled and pushed: double and dashed",
     "zero": "no force: thin",
 }
-_TALL = 50.0  # a lower truss has no room for its numbers, mm
-_ALONG = (0.5, 0.36, 0.64, 0.26, 0.74)  # where on a member its number may stand
+_ALONG = (0.5, 0.42, 0.58, 0.34, 0.66, 0.26, 0.74)  # where on a member its words may stand
+_OFF = 2.3  # words this far above or below a joint leave it in sight, mm
+_ABREAST = 3  # columns of the list
 
 
 @dataclass(frozen=True)
@@ -93,7 +98,7 @@ def describe(statement: lookup.Record, uses: Mapping[str, Any]) -> str:
 def draw(statement: lookup.Record, uses: Mapping[str, Any]) -> Sketch:
     """Draw every member by a line that says its sense, with its numbers beside it."""
     sketch = Sketch()
-    frame = frame_of(statement, uses, least=_TALL)
+    frame = frame_of(statement, uses)
     bars = gather(statement, uses)
     if isinstance(frame, Missing) or not bars:
         sketch.paragraph(MARGIN, 0.0, describe(statement, uses))
@@ -104,14 +109,18 @@ def draw(statement: lookup.Record, uses: Mapping[str, Any]) -> Sketch:
     frame.supports(sketch)
     for x, y in frame.joints.values():
         sketch.disc(x, y, 0.8)
-    listed = _numbers(sketch, frame, bars)
-    frame.names(sketch)
+    shown = {key: bar.words for key, bar in bars.items()}
+    numbers: dict[str, tuple[str, ...]] = {k: (str(n),) for n, k in enumerate(bars, 1)}
+    places = _places(frame, shown)
+    listed = len(places) < len(shown)
+    if listed:
+        shown, places = numbers, _places(frame, numbers)
+    taken = [_written(sketch, places[key], words) for key, words in shown.items() if key in places]
+    frame.names(sketch, [place for places in taken for place in places])
     column = lookup.column(statement, uses["envelope"], uses["largest"]) or {}
-    unit = pretty_unit(str(column.get("unit", "")))
-    _key(sketch, {bar.sense for bar in bars.values()}, listed, unit)
-    if frame.raised > 1.0:
-        words = f"Drawn {frame.raised:.1f} times as high as it is."
-        sketch.text(MARGIN, sketch.low - ROW / 2.0, words, ink=GREY)
+    _key(sketch, {bar.sense for bar in bars.values()}, pretty_unit(str(column.get("unit", ""))))
+    if listed:
+        _list(sketch, list(bars.values()))
     return sketch
 
 
@@ -129,48 +138,53 @@ def _member(sketch: Sketch, ends: tuple[Point, Point], sense: str, gid: str) -> 
         sketch.line(a, b, weight=0.8, dashed=sense == "both", gid=gid)
 
 
-def _numbers(sketch: Sketch, frame: Frame, bars: Mapping[str, Bar]) -> list[Bar]:
-    """Write each member's numbers on it, clear of the others; return those without room."""
-    taken: list[tuple[float, float, float]] = []
-    for x, y in frame.joints.values():
-        taken.append((x, y, 1.5))
-    left = []
+def _places(frame: Frame, shown: Mapping[str, tuple[str, ...]]) -> dict[str, Point]:
+    """Return where on its member the words of each one stand clear of others and of the joints."""
+    taken: list[Taken] = []
+    places = {}
     for member in frame.members:
-        bar = bars.get(member[0])
-        if bar is None:
-            continue
+        words = shown.get(member[0], ())
         (x1, y1), (x2, y2) = frame.ends(member)
-        wide = max(text_width(words) for words in bar.words)
-        steep = abs(y2 - y1) > abs(x2 - x1)
-        room = wide + 2.0 < abs(x2 - x1) or (steep and abs(y2 - y1) > 2.5 * ROW)
-        places = [(x1 + part * (x2 - x1), y1 + part * (y2 - y1)) for part in _ALONG]
-        spot = next((p for p in places if room and _fits(taken, p, bar.words)), None)
-        if spot is None:
-            left.append(bar)
+        wide = max((text_width(line) for line in words), default=0.0) + 2.0
+        high = len(words) * ROW
+        if not words or (wide > abs(x2 - x1) and high + 0.5 > abs(y2 - y1)):
             continue
-        for n, words in enumerate(bar.words):
-            sketch.text(
-                spot[0], _line_at(spot[1], n, len(bar.words)), words, align="center", patch=True
-            )
-    return left
+        spots = ((x1 + part * (x2 - x1), y1 + part * (y2 - y1)) for part in _ALONG)
+        spot = next((p for p in spots if _fits(frame, taken, p, words)), None)
+        if spot is not None:
+            places[member[0]] = spot
+    return places
+
+
+def _written(sketch: Sketch, spot: Point, words: tuple[str, ...]) -> list[Taken]:
+    """Write the words of one member on it; return where they stand."""
+    found = []
+    for n, text in enumerate(words):
+        y = _line_at(spot[1], n, len(words))
+        sketch.text(spot[0], y, text, align="center", patch=True)
+        found.append((spot[0], y, text_width(text) / 2.0 + 0.8))
+    return found
 
 
 def _line_at(middle: float, number: int, count: int) -> float:
     return middle + (ROW - 0.9) * ((count - 1) / 2.0 - number)
 
 
-def _fits(taken: list[tuple[float, float, float]], at: Point, words: tuple[str, ...]) -> bool:
+def _fits(frame: Frame, taken: list[Taken], at: Point, words: tuple[str, ...]) -> bool:
     """Whether all lines of words fit at a place; they are noted if they do."""
     tried = list(taken)
     for n, text in enumerate(words):
-        if not clear_of(tried, at[0], _line_at(at[1], n, len(words)), text):
+        y, half = _line_at(at[1], n, len(words)), text_width(text) / 2.0
+        if any(abs(j - y) < _OFF and abs(i - at[0]) < half + 0.9 for i, j in frame.joints.values()):
+            return False
+        if not clear_of(tried, at[0], y, text):
             return False
     taken[:] = tried
     return True
 
 
-def _key(sketch: Sketch, senses: set[str], listed: list[Bar], unit: str) -> None:
-    """Say what the lines are, and the numbers of members that have no room for them."""
+def _key(sketch: Sketch, senses: set[str], unit: str) -> None:
+    """Say what the lines are, and what is written."""
     y = sketch.low - ROW
     x = MARGIN
     for sense, words in _WORDS.items():
@@ -181,8 +195,18 @@ def _key(sketch: Sketch, senses: set[str], listed: list[Bar], unit: str) -> None
         _member(sketch, ((x, y), (x + 9.0, y)), sense, f"key-{sense}")
         sketch.text(x + 11.0, y, words, ink=GREY)
         x += 16.0 + text_width(words)
-    y -= ROW
-    sketch.text(MARGIN, y, f"T largest tension, C largest compression, {unit}; 0 no force", ink=INK)
-    if listed:
-        each = "; ".join(f"{bar.key} {', '.join(bar.words)}" for bar in listed)
-        sketch.paragraph(MARGIN, y - ROW, f"Members without room: {each}.", ink=INK)
+    said = f"T largest tension, C largest compression, {unit}; 0 no force"
+    sketch.text(MARGIN, y - ROW, said, ink=INK)
+
+
+def _list(sketch: Sketch, bars: list[Bar]) -> None:
+    """List the members by number with their forces, down one column after the other."""
+    rows = -(-len(bars) // _ABREAST)
+    top = sketch.low - ROW
+    step = (WIDTH - 2.0 * MARGIN) / _ABREAST
+    for place, bar in enumerate(bars):
+        x, y = MARGIN + step * (place // rows), top - (place % rows) * (ROW - 0.4)
+        sketch.text(x + 5.0, y, str(place + 1), align="right")
+        sketch.text(x + 7.0, y, shortened(bar.key, 13.0), ink=GREY)
+        for part, text in enumerate(bar.words):
+            sketch.text(x + 21.0 + 14.0 * part, y, text)

@@ -8,12 +8,15 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.figures import lookup
 from calcbook.figures.lookup import Missing, Shown
-from calcbook.figures.sketch import MARGIN, WIDTH, Sketch, text_width
+from calcbook.figures.sketch import GREY, MARGIN, WIDTH, Sketch, text_width
 
 if TYPE_CHECKING:
-    from collections.abc import Iterator, Mapping
+    from collections.abc import Iterator, Mapping, Sequence
 
     from calcbook.figures.sketch import Point
+
+    Segment = tuple[Point, Point]
+    Taken = tuple[float, float, float]  # the middle of words, and half their width
 
 NEEDS = ("joints", "x", "y", "members", "start", "end", "supports", "held")
 TAKES = ("turn",)
@@ -22,6 +25,10 @@ TALL = 78.0  # of a truss on the sheet, mm
 SIDE = 16.0  # beside it, for words and arrows
 _NEAR = 1e-6
 _CROSSED = 3.0  # a word this near to another one is moved, mm
+_HALF_HIGH = 1.5  # of a line of words, mm
+_BESIDE = tuple(
+    (side, gap, up) for gap in (1.9, 5.0) for up in (2.7, 0.0, 4.4, -2.7) for side in (-1.0, 1.0)
+)  # to either side of a joint, how far from it, how far outward, mm
 
 
 @dataclass(frozen=True)
@@ -34,8 +41,6 @@ class Frame:
         Where each joint is, by its key.
     members
         The keys of the members with the joints at their ends.
-    raised
-        How many times higher the truss is drawn than it is.
     held
         How each supported joint is held, and the direction in which a roller moves, in rad.
     """
@@ -43,7 +48,6 @@ class Frame:
     joints: Mapping[str, Point]
     members: tuple[tuple[str, str, str], ...]
     held: tuple[tuple[str, str, float], ...]
-    raised: float = 1.0
 
     def is_upper(self, joint: str) -> bool:
         """Whether a joint is nearer to the top of the truss than to its bottom, where it stands."""
@@ -63,34 +67,35 @@ class Frame:
     def moved(self, down: float) -> Frame:
         """Return the same truss lower on the sheet."""
         joints = {key: (x, y - down) for key, (x, y) in self.joints.items()}
-        return Frame(joints, self.members, self.held, self.raised)
+        return Frame(joints, self.members, self.held)
 
     def supports(self, sketch: Sketch) -> None:
         """Draw each support as the trade does."""
         for joint, kind, turn in self.held:
             _support(sketch, self.joints[joint], kind, turn)
 
-    def names(self, sketch: Sketch) -> None:
-        """Write the names of the joints outside of the truss, beside those that are supported."""
-        held = {joint for joint, *_ in self.held}
-        left = min(x for x, _ in self.joints.values())
+    def names(self, sketch: Sketch, taken: list[Taken], arrows: Sequence[Segment] = ()) -> None:
+        """Write the names of the joints beside them, clear of lines and of what was written.
+
+        Outside of the truss comes first; where there is no room, a line gives way.
+        """
+        lines = [*(self.ends(member) for member in self.members), *arrows]
+        for joint, kind, turn in self.held:
+            _, left, right = _feet(self.joints[joint], kind, turn)
+            lines += [(self.joints[joint], left), (self.joints[joint], right), (left, right)]
         for key, (x, y) in self.joints.items():
-            if key in held:
-                first = x - left < _NEAR
-                sketch.text(
-                    x + (-3.4 if first else 3.4), y + 2.6, key, align="right" if first else "left"
-                )
-            else:
-                sketch.text(x, y + (3.6 if self.is_upper(key) else -3.4), key, align="center")
+            out = 1.0 if self.is_upper(key) else -1.0
+            half = text_width(key) / 2.0
+            tried = [(x + side * (half + gap), y + out * up) for side, gap, up in _BESIDE]
+            free = [at for at in tried if not any(_crosses(line, at, half) for line in lines)]
+            for at in (*free, *tried):
+                if clear_of(taken, *at, key):
+                    sketch.text(*at, key, align="center", ink=GREY, patch=at not in free)
+                    break
 
 
-def frame_of(
-    statement: lookup.Record, uses: Mapping[str, Any], *, least: float = 0.0
-) -> Frame | Missing:
-    """Return the truss of a statement laid out over the sheet, or why there is none to draw.
-
-    A truss lower than ``least`` mm is drawn higher than it is.
-    """
+def frame_of(statement: lookup.Record, uses: Mapping[str, Any]) -> Frame | Missing:
+    """Return the truss of a statement laid out over the sheet, or why there is none to draw."""
     keys = lookup.rows(statement, uses["joints"])
     if isinstance(keys, Missing):
         return keys
@@ -106,8 +111,7 @@ def frame_of(
             if joint not in places:
                 return Missing(key, f"{key} ends at joint {joint}, which is not there")
     held = tuple(s for s in _held(statement, uses) if s[0] in places)
-    joints, raised = _laid_out(places, least)
-    return Frame(joints, members, held, raised)
+    return Frame(_laid_out(places), members, held)
 
 
 def _members(statement: lookup.Record, uses: Mapping[str, Any]) -> Iterator[tuple[str, str, str]]:
@@ -129,23 +133,29 @@ def _held(statement: lookup.Record, uses: Mapping[str, Any]) -> Iterator[tuple[s
         yield key, kind, turn.si if isinstance(turn, Shown) else 0.0
 
 
-def _laid_out(
-    places: Mapping[str, tuple[float, float]], least: float
-) -> tuple[dict[str, Point], float]:
-    """Return the joints in millimetres, as wide as the sheet or as high as allowed, and a factor.
-
-    The factor is that of heights over widths: 1, or more for a truss that is too low.
-    """
+def _laid_out(places: Mapping[str, tuple[float, float]]) -> dict[str, Point]:
+    """Return the joints in millimetres at one scale, as wide as the sheet or as high as allowed."""
     across, up = zip(*places.values(), strict=True)
     wide, high = max(across) - min(across), max(up) - min(up)
     room = WIDTH - 2.0 * (MARGIN + SIDE)
     scale = min(room / (wide or 1.0), TALL / (high or 1.0))
-    raised = max(least / (high * scale), 1.0) if high else 1.0
     left = (WIDTH - wide * scale) / 2.0
     return {
-        key: (left + (x - min(across)) * scale, (y - min(up)) * scale * raised)
+        key: (left + (x - min(across)) * scale, (y - min(up)) * scale)
         for key, (x, y) in places.items()
-    }, raised
+    }
+
+
+def _feet(at: Point, kind: str, turn: float) -> tuple[Point, Point, Point]:
+    """Return the corners of a support's triangle: its top, then the ends of its foot."""
+    along = (math.cos(turn), math.sin(turn))
+    below = (along[1], -along[0])
+    foot = 4.4 if kind == "pinned" else 3.6
+    top, left, right = (
+        (at[0] + side * along[0] + down * below[0], at[1] + side * along[1] + down * below[1])
+        for side, down in ((0.0, 0.8), (-2.4, foot), (2.4, foot))
+    )
+    return top, left, right
 
 
 def _support(sketch: Sketch, at: Point, kind: str, turn: float) -> None:
@@ -159,17 +169,32 @@ def _support(sketch: Sketch, at: Point, kind: str, turn: float) -> None:
             at[1] + side * along[1] + down * below[1],
         )
 
-    foot = 4.4 if kind == "pinned" else 3.6
-    sketch.area([place(0.0, 0.8), place(-2.4, foot), place(2.4, foot)], gid=f"support-{kind}")
+    sketch.area(_feet(at, kind, turn), gid=f"support-{kind}")
+    foot = 4.4 if kind == "pinned" else 5.1
     if kind != "pinned":
         for side in (-1.4, 1.4):
-            x, y = place(side, foot + 0.75)
+            x, y = place(side, foot - 0.75)
             sketch.disc(x, y, 0.7)
-        foot += 1.5
     sketch.line(place(-3.4, foot), place(3.4, foot), weight=1.0)
 
 
-def clear_of(taken: list[tuple[float, float, float]], x: float, y: float, words: str) -> bool:
+def _crosses(line: Segment, at: Point, half: float) -> bool:
+    """Whether a line passes through words centred at a place (the parts of it in both strips)."""
+    first, last = 0.0, 1.0
+    for start, end, centre, room in (
+        (line[0][0], line[1][0], at[0], half + 0.4), (line[0][1], line[1][1], at[1], _HALF_HIGH),
+    ):  # fmt: skip
+        run = end - start
+        if abs(run) < _NEAR:
+            if abs(start - centre) >= room:
+                return False
+            continue
+        enters, leaves = sorted(((centre - room - start) / run, (centre + room - start) / run))
+        first, last = max(first, enters), min(last, leaves)
+    return first < last
+
+
+def clear_of(taken: list[Taken], x: float, y: float, words: str) -> bool:
     """Whether words centred at a place stay clear of those placed before; notes them if so."""
     half = text_width(words) / 2.0 + 0.8
     for other_x, other_y, other_half in taken:

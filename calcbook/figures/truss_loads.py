@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING, Any
 
 from calcbook.figures import lookup
 from calcbook.figures.lookup import Missing, Shown
-from calcbook.figures.sketch import GREY, INK, MARGIN, PAPER, ROW, WIDTH, Sketch, text_width
+from calcbook.figures.sketch import INK, MARGIN, PAPER, ROW, WIDTH, Sketch, text_width
 from calcbook.figures.truss_frame import NEEDS as FRAME
 from calcbook.figures.truss_frame import TAKES as MORE
 from calcbook.figures.truss_frame import Frame, clear_of, frame_of
@@ -18,6 +18,7 @@ if TYPE_CHECKING:
     from collections.abc import Mapping
 
     from calcbook.figures.sketch import Point
+    from calcbook.figures.truss_frame import Taken
 
 NEEDS = (*FRAME, "loads", "down", "right")
 TAKES = MORE
@@ -123,12 +124,19 @@ def _one(sketch: Sketch, frame: Frame, picture: Picture) -> float:
     for x, y in frame.joints.values():
         sketch.disc(x, y, 0.8, fill=PAPER)
     most = max((load.size for load in picture.loads), default=0.0)
-    taken: list[tuple[float, float, float]] = []
-    for load in picture.loads:
-        upper = frame.is_upper(load.joint)
-        far = _arrow(sketch, frame, load, max(_ARROW * load.size / most, _LEAST), picture.column)
-        _value(sketch, load.words, far, taken, upper=upper)
-    _names(sketch, frame, taken)
+    taken: list[Taken] = []
+    ends = [
+        _arrow(sketch, frame, load, max(_ARROW * load.size / most, _LEAST), picture.column)
+        for load in picture.loads
+    ]
+    for load, far in zip(picture.loads, ends, strict=True):
+        if load.down.si:
+            _value(sketch, load.words, far, taken, upper=frame.is_upper(load.joint))
+        else:
+            _beside(sketch, load.words, frame.joints[load.joint], far, taken)
+    joints = (frame.joints[load.joint] for load in picture.loads)
+    arrows = list(zip(joints, ends, strict=True))
+    frame.names(sketch, taken, arrows)
     return min(y for _, y in frame.joints.values()) - _ARROW
 
 
@@ -137,7 +145,9 @@ def _arrow(sketch: Sketch, frame: Frame, load: JointLoad, long: float, column: s
     x, y = frame.joints[load.joint]
     along = (load.right.si / load.size, -load.down.si / load.size)
     upper = frame.is_upper(load.joint)
-    toward = (along[1] < 0.0) == upper or (along[1] == 0.0 and along[0] > 0.0)
+    toward = (along[1] < 0.0) == upper
+    if not load.down.si:
+        toward = (along[0] > 0.0) == (x <= WIDTH / 2.0)
     away = -1.0 if toward else 1.0
     near = (x + away * 1.2 * along[0], y + away * 1.2 * along[1])
     far = (x + away * (1.2 + long) * along[0], y + away * (1.2 + long) * along[1])
@@ -145,9 +155,7 @@ def _arrow(sketch: Sketch, frame: Frame, load: JointLoad, long: float, column: s
     return far
 
 
-def _value(
-    sketch: Sketch, words: str, far: Point, taken: list[tuple[float, float, float]], *, upper: bool
-) -> None:
+def _value(sketch: Sketch, words: str, far: Point, taken: list[Taken], *, upper: bool) -> None:
     """Write a load's value beyond its arrow, clear of those before."""
     step = ROW - 0.6 if upper else -(ROW - 0.6)
     at = far[1] + (2.2 if upper else -2.2)
@@ -158,12 +166,12 @@ def _value(
     sketch.text(across, at, words, align="center", patch=True)
 
 
-def _names(sketch: Sketch, frame: Frame, taken: list[tuple[float, float, float]]) -> None:
-    """Write the names of the joints inside the truss, clear of the values."""
-    for key, (x, y) in frame.joints.items():
-        upper = frame.is_upper(key)
-        for dx, dy in ((3.6, -3.2), (-3.6, -3.2), (3.6, 3.2), (-3.6, 3.2)):
-            at = y + (dy if upper else -dy)
-            if clear_of(taken, x + dx, at, key):
-                sketch.text(x + dx, at, key, align="center", ink=GREY, patch=True)
-                break
+def _beside(sketch: Sketch, words: str, joint: Point, far: Point, taken: list[Taken]) -> None:
+    """Write the value of a level load over its arrow, off the joint and what holds it."""
+    half = text_width(words) / 2.0
+    side = 1.0 if far[0] > joint[0] else -1.0
+    across = joint[0] + side * max(abs(far[0] - joint[0]) / 2.0, half + 2.0)
+    at = far[1] + 2.4
+    while not clear_of(taken, across, at, words):
+        at += ROW - 0.6
+    sketch.text(across, at, words, align="center", patch=True)

@@ -86,15 +86,47 @@ def test_no_words_lie_on_each_other(item: dict[str, Any]) -> None:
     assert not [(a, b) for a, b in combinations(found, 2) if a.meets(b)]
 
 
-def test_a_low_truss_is_drawn_higher_and_says_so() -> None:
-    """Members of a flat truss keep room for their numbers."""
+def flattened() -> dict[str, Any]:
+    """Return the same truss with little height, its post pulled and pushed."""
     low = deepcopy(TRUSS)
     for item in low["parts"][1]["items"]:
         if item["name"] == "joints":
-            item["columns"][1] = column("y", "m", ["0", "0", "0", "0.6"])
-    said = words(figures.draw(low, BARS))
-    assert any(text.startswith("Drawn ") for text in said)
-    assert "T 6.7" in said
+            item["columns"][1] = column("y", "m", ["0", "0", "0", "0.5"])
+        if item["name"] == "envelope":
+            item["columns"][0] = column("N", "kN", ["6.7", "7.1", "-1.0", "-8.3", "2.0"], 1e3)
+            item["columns"][1] = column("M", "kN", ["1.0", "-2.5", "-8.3", "-9.0", "-3.0"], 1e3)
+    return low
+
+
+def test_members_without_room_for_their_forces_have_a_number_and_a_list() -> None:
+    """A flat truss keeps its proportions: a number on each member, its forces listed by it."""
+    svg = figures.draw(flattened(), BARS)
+    said = words(svg)
+    assert {str(number) for number in range(1, 6)} <= set(said)
+    assert {"AB", "BC", "AD", "DC", "BD", "T 6.7", "C 8.3"} <= set(said)
+    found = boxes(svg)
+    assert not [(a, b) for a, b in combinations(found, 2) if a.meets(b)]
+
+
+def test_a_roomy_truss_has_its_forces_on_its_members() -> None:
+    """Nothing is numbered or listed where every member has room."""
+    assert not {"1", "AB"} & set(words(figures.draw(TRUSS, BARS)))
+
+
+def test_a_level_load_stays_off_the_truss_and_its_supports() -> None:
+    """Pushes at both supports are drawn from outside, their values beside, not on, the support."""
+    pushed = deepcopy(TRUSS)
+    for item in pushed["parts"][1]["items"]:
+        if item["name"] == "right":
+            item["columns"][1] = column("V", "kN", ["5.0", "0.0", "4.0", "0.0"], 1e3)
+        if item["name"] == "down":
+            item["columns"][1]["texts"] = ["0.0"] * 4
+            item["columns"][1]["si"] = [0.0] * 4
+    svg = figures.draw(pushed, LOADS)
+    spans = {key: [x for x, _ in outline(svg, f"load-W-{key}")] for key in "AC"}
+    left, right = (max(spans["A"]), min(spans["C"]))
+    lines = outline(svg, "member-AB")[:1] + outline(svg, "member-BC")[-1:]
+    assert left < lines[0][0] < lines[1][0] < right
 
 
 def test_supports_are_drawn_as_they_hold() -> None:

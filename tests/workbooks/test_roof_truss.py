@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import math
 import shutil
-from typing import TYPE_CHECKING
+from dataclasses import replace
+from typing import TYPE_CHECKING, Any
 
+import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
@@ -15,12 +17,16 @@ from trusses import BOOK, TABLES, gable, howe, king_post, point, truss
 from calcbook.job import Job, template_folder, templates
 from calcbook.record import RowRecord
 from calcbook.run import Runner, find_item
+from calcbook.solvers import Solver
+from calcbook.solvers import truss as truss_solver
 
 if TYPE_CHECKING:
-    from collections.abc import Callable
+    from collections.abc import Callable, Mapping
     from pathlib import Path
 
     from sheets import Sheet
+
+    from calcbook.solvers.truss import FoundTruss
 
     Fill = Callable[..., Sheet]
     Published = Callable[[str], list[dict[str, str]]]
@@ -68,6 +74,34 @@ def test_the_second_way_says_which_it_is(fill: Fill, looked: str, way: float) ->
     assert one == pytest.approx(other, rel=1e-12)
     said = find_item(sheet.statement, "solved")["says"]  # type: ignore[index]
     assert any(text.startswith(f"{looked} a second way: ") for text in said)
+
+
+@pytest.mark.parametrize("looked", ["BC", "CK", "DK"])
+def test_the_second_way_fails_a_wrong_force(
+    fill: Fill, monkeypatch: pytest.MonkeyPatch, looked: str
+) -> None:
+    """A solver that is 1 % off for the bar looked at is found out, by a cut and at a joint."""
+
+    def wrong(given: Mapping[str, Any]) -> FoundTruss:
+        found = truss_solver.run(given)
+        bars = np.array([label == looked for label in given["members"]])
+        forces = np.where(bars, 1.01, 1.0) * found.result.forces
+        return replace(found, result=replace(found.result, forces=forces))
+
+    right = truss_solver.SOLVER
+    spoiled = Solver(right.name, right.method, right.roles, right.outcomes, wrong)
+    monkeypatch.setattr(truss_solver, "SOLVER", spoiled)
+    sheet = fill(BOOK, {**TABLES, "looked": looked, "case_l": "L"}, howe())
+    assert not sheet.checks()["Both ways give the same force, within 0.1 %"]
+
+
+def test_only_pulls_of_cut_bars_act_on_the_part(fill: Fill) -> None:
+    """The two bars that meet at the centre have no arm, the bar looked at has the truss's depth."""
+    sheet = fill(BOOK, {**TABLES, "looked": "BC", "case_l": "L"}, howe())
+    pulls, arms = (sheet.by_key("cut_members", name) for name in ("e_m", "r_m"))
+    cut = {bar for bar, passes in sheet.by_key("cut_members", "i_b").items() if passes}
+    assert {bar for bar, pull in pulls.items() if pull} == cut
+    assert [bar for bar, arm in arms.items() if abs(arm) > 1e-9] == ["BC"]
 
 
 def test_a_diagonal_between_parallel_chords_is_cut_with_components(fill: Fill) -> None:
@@ -169,6 +203,26 @@ def test_least_wind_pushes_the_windward_half(fill: Fill) -> None:
     sheet = fill(BOOK, {})
     assert sum(sheet.column("wind_right", "H_6")) == pytest.approx(3648.0)
     assert sum(sheet.column("wind_up", "V_6")) == pytest.approx(0.0, abs=1e-6)
+
+
+def cautions(sheet: Sheet, words: str) -> list[bool]:
+    """Return whether each caution with these words applies."""
+    items = [item for part in sheet.statement["parts"] for item in part.get("items", ())]
+    return [i["applies"] for i in items if i["kind"] == "remark" and words in i["text"]]
+
+
+@pytest.mark.parametrize(("sets", "words", "wanted"), [
+    ({"o_w": "0.4 m"}, "goes on beyond the outer joints", True),
+    ({"o_w": "0 m"}, "goes on beyond the outer joints", False),
+    ({"h_t": "1.0 m"}, "steeper or flatter", True),
+    ({"h_t": "0.5 m"}, "steeper or flatter", False),
+    ({"h_t": "1.0 m", **NO_WIND}, "steeper or flatter", False),
+])  # fmt: skip
+def test_what_wind_does_not_reach_is_cautioned(
+    fill: Fill, sets: dict[str, str], words: str, wanted: bool
+) -> None:
+    """Eaves, and a roof unlike the wind workbook's: flat here, so 9.5 degrees are, 4.8 are not."""
+    assert cautions(fill(BOOK, sets), words) == [wanted]
 
 
 # --- combinations and what carries the truss ----------------------------------------------------
