@@ -118,7 +118,8 @@ def test_outputs_that_moved_on_say_so(run_wind: Path, capsys: pytest.CaptureFixt
     line = f"These outputs show fingerprint {shown[:12]}; {MOVED}"
     for _ in range(2):
         assert f"wind: {line}" in printed(capsys, "open", str(folder))
-    assert f"wind, saved outputs: {line}" in printed(capsys, "status", str(folder))
+    told = "saved outputs of an earlier record, run all cells: wind"
+    assert told in printed(capsys, "status", str(folder))
     markdown, plain = first(run_wind)
     assert markdown.startswith(f"**{line}**\n\n")
     assert plain.startswith(f"{line}\n\n")

@@ -27,7 +27,10 @@ if TYPE_CHECKING:
     from collections.abc import Iterator, Mapping, Sequence
     from pathlib import Path
 
-FIRST = (BASIS, "dead-load-take-off", "wind-pressure")
+FIRST = (
+    BASIS, "dead-load-take-off", "wind-pressure", "load-combinations", "floor-beam",
+    "beam-schedule", "roof-truss", "column-accumulation", "column-schedule",
+)  # fmt: skip
 ISSUE_DATE = "issue_date"
 _PAGE = re.compile(rb"/Type\s*/Page\b")
 _UNFIT = re.compile(r"[^\w.-]+")

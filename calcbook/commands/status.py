@@ -10,7 +10,7 @@ from typing import TYPE_CHECKING
 
 from calcbook.commands import review
 from calcbook.commands.common import Progress
-from calcbook.commands.saved import SavedOutputs, moved_on, moved_words
+from calcbook.commands.saved import SavedOutputs, moved_on
 from calcbook.errors import CalcbookError
 from calcbook.job import BASIS, Job
 from calcbook.run import Runner
@@ -51,10 +51,13 @@ def status(arguments: Namespace) -> int:
 
 def _print_moved(job: Job, runner: Runner) -> None:
     """Say which notebooks were saved with outputs that are no longer so."""
+    found = []
     for workbook in job.workbooks:
         with suppress(CalcbookError):  # what cannot be run was said already
-            if shown := moved_on(SavedOutputs(job.notebook(workbook)), job, runner, workbook):
-                print(f"{workbook}, saved outputs: {moved_words(shown)}")
+            if moved_on(SavedOutputs(job.notebook(workbook)), job, runner, workbook):
+                found.append(workbook)
+    if found:
+        print(f"saved outputs of an earlier record, run all cells: {', '.join(found)}")
 
 
 def summary(statement: Mapping[str, object]) -> str:
