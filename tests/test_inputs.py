@@ -272,8 +272,9 @@ def test_rows_are_brought_forward_and_joined_by_key() -> None:
 
 @pytest.mark.parametrize(
     ("keys", "reason"),
-    [(["Roof"], "row 'Low' of source.levels is missing here"),
-     (["Roof", "Low", "Mid"], "row 'Mid' is not in source.levels")],
+    [(["Roof"], "row 'Low' of source.levels is missing here: enter its cells"),
+     (["Roof", "Low", "Mid"],
+      "row 'Mid' is not in source.levels: it goes with the next change of levels")],
 )  # fmt: skip
 def test_missing_and_extra_keys_are_errors(keys: list[str], reason: str) -> None:
     """A key on one side only is said; nothing is computed with half a join."""
