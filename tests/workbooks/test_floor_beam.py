@@ -13,6 +13,7 @@ from hypothesis import strategies as st
 from sheets import CODES, rows_of
 
 from calcbook import cases
+from calcbook.statics import panels
 
 if TYPE_CHECKING:
     from collections.abc import Callable
@@ -90,6 +91,19 @@ def test_a_panel_is_carried_whole_by_its_four_edges(fill: Fill) -> None:
 
     assert 2 * area("4 m", "6 m") + 2 * area("6 m", "4 m") == pytest.approx(24.0)
     assert [area("4 m", "6 m", r_2="1.4"), area("6 m", "4 m", r_2="1.4")] == [0.0, 12.0]
+
+
+@pytest.mark.parametrize(("along", "across"), [(5.0, 6.2), (6.2, 5.0), (4.0, 4.0), (3.0, 7.0)])
+def test_panels_are_those_of_the_statics_package(fill: Fill, along: float, across: float) -> None:
+    """Total and peak on an edge are those the package gives to it, one way and two ways."""
+    ends = [support("A", "0 m"), support("B", f"{along} m", "roller")]
+    strips = [panel("1", "0 m", f"{along} m", f"{across} m")]
+    sheet = fill(BOOK, {}, beam(ends, strips=strips))
+    spread = panels.slab_panel(5.5e3, along, across)
+    edge = spread.short if along < across else spread.long
+    assert sheet.value("A_b") * 5.5e3 == pytest.approx(edge.total)
+    peak = edge.peak / 1e3 if edge.total else 0.0
+    assert kilonewtons(sheet, "w_L0", "live_loads") == pytest.approx([peak])
 
 
 def test_lever_rule(fill: Fill) -> None:

@@ -19,6 +19,7 @@ from calcbook.record import RowRecord
 from calcbook.run import Runner, find_item
 from calcbook.solvers import Solver
 from calcbook.solvers import truss as truss_solver
+from calcbook.statics import spreading
 
 if TYPE_CHECKING:
     from collections.abc import Callable, Mapping
@@ -172,6 +173,29 @@ def test_plain_wind_is_square_to_slopes_and_walls(fill: Fill) -> None:
     assert sum(heel.column("wind_right", "H_2")) == pytest.approx(12e3)
     assert sum(heel.column("wind_right", "H_3")) == pytest.approx(-12e3)
     assert sum(heel.column("wind_up", "V_2")) == pytest.approx(0.0, abs=1e-6)
+
+
+def test_loads_reach_the_joints_as_the_package_spreads_them(fill: Fill) -> None:
+    """Joint by joint, wind on a slope and weight on plan are those of the statics package."""
+    winds = rows_of("winds", {"key": "W1", "named": "slope", "C_l": "1"})
+    cover = {"key": "tiles", "on": "roof", "by": "typed", "g_t": "1 kPa", "certain": "yes",
+             "measured": "slope"}  # fmt: skip
+    sheet = fill(BOOK, {**NO_WIND, "d_t": "0 m"}, winds | rows_of("covers", cover))
+    x, y = sheet.by_key("joints", "x_j"), sheet.by_key("joints", "y_j")
+    ridge = max(y, key=lambda joint: y[joint])
+    left = ["L0", *(k for k in x if k.startswith("U") and x[k] <= x[ridge])]
+    xy = np.array([[x[k], y[k]] for k in left])
+    blown = spreading.chord_wind(xy, 3e3, 4.0)
+    right, down = sheet.by_key("wind_right", "H_1"), sheet.by_key("wind_down", "P_1")
+    assert [right[k] for k in left] == pytest.approx(blown[:, 0].tolist())
+    assert [down[k] for k in left] == pytest.approx((-blown[:, 1]).tolist())
+    tiles = spreading.chord_loads(xy, 1e3, 4.0, measured="slope")
+    bare = fill(
+        BOOK, {**NO_WIND, "d_t": "0 m"}, winds | rows_of("covers", {**cover, "g_t": "0 kPa"})
+    )
+    with_tiles, without = (one.by_key("joint_loads", "P_D") for one in (sheet, bare))
+    added = [with_tiles[k] - without[k] for k in left[:-1]]  # the ridge has two slopes
+    assert added == pytest.approx((-tiles[:-1, 1]).tolist())
 
 
 def test_roof_zones_are_laid_from_the_side_the_wind_comes_from(fill: Fill) -> None:
