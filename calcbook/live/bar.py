@@ -19,7 +19,6 @@ if TYPE_CHECKING:
     Plain = Mapping[str, Any]
 
 _log = logging.getLogger(__name__)
-PAGES = "pages"
 
 
 class Bar:
